@@ -1,0 +1,34 @@
+// SPDX-License-Identifier: MIT
+// Whoever listens to a run: files, terminal, wire. Each call has an empty default, so that a sink says only
+// what it wants to hear. Calls come from one thread, in the order of source time.
+#pragma once
+
+#include <cstdint>
+#include <string>
+
+#include "estimator/core/results.hpp"
+
+namespace holdfast::outputs {
+
+// What a run has come to when it ends.
+struct RunEnd {
+    bool complete = true;            // false: the input broke off, or was stopped, before its end
+    std::string reason{};            // why it is not complete, in words; empty where it is
+    double duration_s = 0.0;         // source time from the first frame to the last
+    std::uint64_t frames = 0;        // taken by the engine
+    std::uint64_t repeated = 0;      // frames with the time of the one before, left out
+    std::uint64_t out_of_order = 0;  // frames with an earlier time, left out
+};
+
+class Sink {
+  public:
+    virtual ~Sink() = default;
+    virtual void on_estimate(const core::Estimate&) {}
+    virtual void on_closure(const core::Closure&) {}
+    virtual void on_alarm(const core::Alarm&) {}
+    // Once a second of source time, and once before the end.
+    virtual void on_health(std::int64_t /*time_ns*/, const core::HealthTable&) {}
+    virtual void on_end(const RunEnd&) {}
+};
+
+}  // namespace holdfast::outputs
