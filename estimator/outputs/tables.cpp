@@ -6,33 +6,50 @@
 
 namespace holdfast::outputs {
 
-std::string_view closures_header() {
-    return "closure,lap,zone,time_command,time_closed,speed,closing_time,tau,tau_sd,t95,t95_low,t95_high,"
-           "plateau,chords,time_brake,margin,margin_sd,shortfall,shortfall_sd,shortfall_share,"
-           "probability_short,probability_slow,slow,verdict\n";
-}
-
-std::string closure_row(const core::Closure& c, double chord_m) {
+std::vector<Cell> closure_cells(const core::Closure& c, double chord_m) {
     const bool known = c.reattachment_known;
     const bool whole = known && c.whole;    // comes back whole: 95 % has an instant
     const bool judged = known && c.braked;  // there are brakes to judge it at
+    const auto cell = [](std::string_view name, double value, bool is_known = true) {
+        return Cell{name, is_known ? number(value) : std::string{}};
+    };
+    return {
+        {"closure", std::to_string(c.number)},
+        {"lap", std::to_string(c.lap)},
+        {"zone", std::to_string(c.zone)},
+        cell("time_command", c.time_command_s),
+        cell("time_closed", c.time_closed_s),
+        cell("speed", c.speed_mps),
+        cell("closing_time", c.closing_time_s),
+        cell("tau", c.tau_s.value, known),
+        cell("tau_sd", c.tau_s.sd, known),
+        cell("t95", c.t95_s, whole),
+        cell("t95_low", c.t95_low_s, known),
+        cell("t95_high", c.t95_high_s, whole),
+        cell("plateau", c.plateau, known),
+        cell("chords", c.t95_s * c.speed_mps / chord_m, whole),
+        cell("time_brake", c.time_brake_s, c.braked),
+        cell("margin", c.margin_s.value, whole && c.braked),
+        cell("margin_sd", c.margin_s.sd, whole && c.braked),
+        cell("shortfall", c.shortfall_n.value, judged),
+        cell("shortfall_sd", c.shortfall_n.sd, judged),
+        cell("shortfall_share", c.shortfall_share, judged),
+        cell("probability_short", c.probability_short, judged),
+        cell("probability_slow", c.probability_slow, known && c.usual_known),
+        {"slow", known ? (c.slow ? "1" : "0") : ""},
+        {"verdict", std::string(verdict_cell(c)), Cell::Kind::word},
+    };
+}
+
+std::string closures_header() {
     Row row;
-    row.add(c.number).add(c.lap).add(c.zone);
-    row.add(c.time_command_s).add(c.time_closed_s).add(c.speed_mps).add(c.closing_time_s);
-    row.add_if(known, c.tau_s.value).add_if(known, c.tau_s.sd);
-    row.add_if(whole, c.t95_s).add_if(known, c.t95_low_s).add_if(whole, c.t95_high_s);
-    row.add_if(known, c.plateau).add_if(whole, c.t95_s * c.speed_mps / chord_m);
-    row.add_if(c.braked, c.time_brake_s);
-    row.add_if(whole && c.braked, c.margin_s.value).add_if(whole && c.braked, c.margin_s.sd);
-    row.add_if(judged, c.shortfall_n.value).add_if(judged, c.shortfall_n.sd);
-    row.add_if(judged, c.shortfall_share).add_if(judged, c.probability_short);
-    row.add_if(known && c.usual_known, c.probability_slow);
-    if (known) {
-        row.add(c.slow ? 1 : 0);
-    } else {
-        row.empty();
-    }
-    row.add(verdict_cell(c));
+    for (const Cell& cell : closure_cells({}, 1.0)) row.add(cell.name);
+    return row.line();
+}
+
+std::string closure_row(const core::Closure& closure, double chord_m) {
+    Row row;
+    for (const Cell& cell : closure_cells(closure, chord_m)) row.add(cell.text);
     return row.line();
 }
 
