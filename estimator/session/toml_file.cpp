@@ -1,0 +1,94 @@
+// SPDX-License-Identifier: MIT
+#include "estimator/session/toml_file.hpp"
+
+#include <algorithm>
+#include <cstring>
+#include <sstream>
+#include <utility>
+
+#define TOML_HEADER_ONLY 1
+#define TOML_EXCEPTIONS 0
+#include <toml++/toml.h>
+
+#include "estimator/session/raw_file.hpp"
+
+namespace holdfast::session {
+namespace {
+
+using Path = std::vector<std::string>;
+
+std::string type_name(const toml::node& node) {
+    std::ostringstream name;
+    name << node.type();
+    return name.str();
+}
+
+// Nodes in the order in which they stand in the file: the library keeps a table sorted by name.
+std::vector<std::pair<std::string, const toml::node*>> in_file_order(const toml::table& table) {
+    std::vector<std::pair<std::string, const toml::node*>> nodes;
+    for (const auto& [key, node] : table) nodes.emplace_back(key.str(), &node);
+    std::stable_sort(nodes.begin(), nodes.end(), [](const auto& a, const auto& b) {
+        return a.second->source().begin < b.second->source().begin;
+    });
+    return nodes;
+}
+
+void flatten(const toml::table& table, const Path& path, std::vector<TomlEntry>& into) {
+    for (const auto& [key, node] : in_file_order(table)) {
+        TomlEntry entry{path, node->source().begin.line, TomlTable{}};
+        entry.path.push_back(key);
+        if (const toml::table* inner = node->as_table()) {
+            const Path inner_path = entry.path;
+            into.push_back(std::move(entry));
+            flatten(*inner, inner_path, into);
+            continue;
+        }
+        if (node->is_number()) {
+            entry.value = node->value<double>().value_or(0.0);
+        } else if (const auto text = node->value<std::string>(); node->is_string() && text) {
+            entry.value = *text;
+        } else {
+            entry.value = TomlOther{type_name(*node)};
+        }
+        into.push_back(std::move(entry));
+    }
+}
+
+}  // namespace
+
+std::string TomlEntry::key() const {
+    std::string joined_path;
+    for (const std::string& part : path) joined_path += (joined_path.empty() ? "" : ".") + part;
+    return joined_path;
+}
+
+std::string describe(const TomlEntry& entry) {
+    if (const double* number = entry.number()) return "the number " + number_text(*number);
+    if (const std::string* text = entry.text()) return "the text " + quoted(*text);
+    if (entry.is_table()) return "a table";
+    return "a value of type " + std::get<TomlOther>(entry.value).type;
+}
+
+Result<std::vector<TomlEntry>> read_toml_file(const std::string& path) {
+    Result<RawFile> file = RawFile::open(path);
+    if (!file) return file.errors();
+    std::string text;
+    do {
+        text.append(file->unread().begin(), file->unread().end());
+    } while (file->refill());
+    if (file->failure()) return Error{.file = path, .message = *file->failure()};
+
+    const toml::parse_result parsed = toml::parse(text, path);
+    if (!parsed) {
+        const toml::parse_error& error = parsed.error();
+        return Error{.file = path,
+                     .line = error.source().begin.line,
+                     .message = "not TOML at character " + std::to_string(error.source().begin.column) +
+                                ": " + std::string(error.description())};
+    }
+    std::vector<TomlEntry> entries;
+    flatten(parsed.table(), {}, entries);
+    return entries;
+}
+
+}  // namespace holdfast::session
