@@ -32,13 +32,13 @@ class Terminal : public Sink {
     void on_alarm(const core::Alarm& alarm) override;
     void on_end(const RunEnd& end) override;
 
-    // A line of the program's own, kept clear of the status line.
-    void say(const std::string& line);
+    // Takes the status line away, so that something else may be written.
+    void clear_status();
     // Share of the input that has been read, 0 to 1; negative where it is not known.
     void set_progress(double share) { progress_ = share; }
 
   private:
-    void clear_status();
+    void say(const std::string& line);
     void show_status(const core::Estimate& estimate);
 
     std::ostream& out_;
