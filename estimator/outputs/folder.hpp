@@ -20,12 +20,12 @@ namespace holdfast::outputs {
 
 // What the files say about where they come from.
 struct Outing {
-    std::string log;  // file or endpoint
-    std::string car_name;
-    std::string car_file;
+    std::string log{};  // file or endpoint
+    std::string car_name{};
+    std::string car_file{};
     double flap_chord_m = 0.0;
     double rate_hz = 0.0;  // of estimates.csv
-    StreamInfo stream;     // for the names of the ride heights
+    StreamInfo stream{};   // for the names of the ride heights
 };
 
 // Counters of a live link, by name, in the order of their showing.
