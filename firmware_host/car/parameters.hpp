@@ -45,7 +45,11 @@ struct ChassisParameters {
     double roll_inertia_kgm2 = 200.0;    // sprung mass
     double rolling_resistance = 0.015;
     double rotating_mass_share = 0.0;  // wheels and drive line: added to the mass that has to be accelerated
-    double tyre_growth_s2pm = 3e-7;    // rise of the axle, m per (m/s)^2
+    double slip_drive_pn = 6e-7;  // the wheels that `speed` is read from run faster by this share per newton
+    double slip_brake_pn = 3e-7;  // and slower under the brakes
+    double vibration_mps2 = 0.5;  // amplitude of the engine's shaking in the accelerations
+    double vibration_hz = 31.0;
+    double tyre_growth_s2pm = 3e-7;  // rise of the axle, m per (m/s)^2
     AxleParameters front;
     AxleParameters rear;
 };
@@ -82,8 +86,8 @@ enum class Reattachment : std::uint8_t {
 
 struct FlapParameters {
     double chord_m = 0.24;
-    double area_m2 = 1.0;        // rear downforce area that the flap switches, at the wing
-    double overhang_m = 0.6;     // wing's centre of pressure behind the rear axle: the lever on both axles
+    double area_m2 = 1.0;        // downforce area that the flap switches, at the rear axle
+    double overhang_m = 0.6;     // wing behind the rear axle: losing it at the rear, the front gains a little
     double drag_area_m2 = 0.25;  // drag area that goes with it, beside the induced drag
     double opening_time_s = 0.08;
     double opening_detach_tau_s = 0.004;
@@ -153,9 +157,10 @@ struct DriverParameters {
     double braking_grip = 1.60;
     double braking_limit_mps2 = 54.0;  // by brakes and drag together
     double lateral_limit_mps2 = 28.0;
-    double brake_gain_nppa = 4.2e-3;  // braking force at the road by line pressure
+    double brake_gain_nppa = 4.6e-3;  // braking force at the road by line pressure
     double brake_rise_s = 0.14;
     double brake_point_sd_m = 2.5;  // from lap to lap
+    double lift_s = 0.0;            // throttle shut this long before the brakes: coasting
     double throttle_rise_s = 0.35;
     std::vector<double> shift_speeds_mps{26.0, 36.0, 46.0, 56.0, 67.0, 79.0};
     double shift_time_s = 0.03;     // drive cut
