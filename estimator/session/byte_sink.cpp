@@ -12,7 +12,7 @@
 namespace holdfast::session {
 namespace {
 
-constexpr std::size_t kBlockBytes = 64 * 1024;
+constexpr std::size_t kBlockBytes = std::size_t{64} * 1024;
 
 }  // namespace
 

@@ -59,9 +59,9 @@ class CarReader {
     void find_sensors() {
         std::vector<const TomlEntry*> sensors;
         for (const auto& [key, entry] : entries_) {
-            const bool is_sensor =
+            const bool is_table_within =
                 entry->is_table() && entry->path.size() == 2 && entry->path[0] == kRideHeightTable;
-            if (is_sensor && entry->path[1] != "tyre_growth") sensors.push_back(entry);
+            if (is_table_within && entry->path[1] != "tyre_growth") sensors.push_back(entry);
         }
         std::sort(sensors.begin(), sensors.end(),
                   [](const TomlEntry* a, const TomlEntry* b) { return a->line < b->line; });
@@ -69,8 +69,6 @@ class CarReader {
             if (result_.car.ride_height_count == kMaxRideHeights) {
                 complain(sensor->key(), sensor->line,
                          "one sensor too many; expected " + std::to_string(kMaxRideHeights) + " at most");
-                std::erase_if(unread_,
-                              [&](const std::string& key) { return key.starts_with(sensor->key() + "."); });
                 continue;
             }
             result_.ride_height_names.push_back(sensor->path[1]);
@@ -140,8 +138,9 @@ class CarReader {
             const std::string table = table_of(*entry);
             const std::vector<std::string> known = keys_of(table);
             if (entry->is_table() && !keys_of(own_table(*entry)).empty()) continue;
-            const bool within_unknown = entry->path.size() > 1 && known.empty();
-            if (within_unknown) continue;  // its table has been complained of
+            const bool in_no_sensor = table == kSensorTable && !is_sensor(entry->path[1]);
+            if (entry->path.size() > 1 && (known.empty() || in_no_sensor))
+                continue;  // its table was complained of
             if (entry->path.size() == 1) {
                 complain(key, entry->line,
                          "not known; expected a table: [car], [front], [rear], [flap], [ride_height]");
@@ -153,6 +152,11 @@ class CarReader {
                              ", or one of these with _sd");
             }
         }
+    }
+
+    bool is_sensor(const std::string& name) const {
+        const std::vector<std::string>& names = result_.ride_height_names;
+        return std::find(names.begin(), names.end(), name) != names.end();
     }
 
     // Name, in the key records, of the table that an entry is in, and of the table that it is.

@@ -59,14 +59,16 @@ class LayoutReader {
         for (std::size_t later = 0; later < cells_.size(); ++later) {
             for (std::size_t earlier = 0; earlier < later; ++earlier) {
                 if (cells_[later].name.empty() || cells_[later].name != cells_[earlier].name) continue;
-                complain(later, "the header names " + quoted(cells_[later].name) + " twice (also in column " +
-                                    std::to_string(earlier + 1) + "); expected each name once");
+                complain(later, "the header names " + in_quotes(cells_[later].name) +
+                                    " twice (also in column " + std::to_string(earlier + 1) +
+                                    "); expected each name once");
                 break;
             }
         }
     }
 
     void take_mapped(const MappedChannel& mapped) {
+        claimed_.push_back(mapped.channel);
         const auto complain_of_key = [&](std::string message) {
             errors_.push_back({map_.file, mapped.line, 0, "channels." + mapped.channel, std::move(message)});
         };
@@ -77,17 +79,17 @@ class LayoutReader {
         auto found = named(&HeaderCell::text);
         if (found == cells_.end()) found = named(&HeaderCell::name);
         if (found == cells_.end()) {
-            return complain_of_key("no column " + quoted(mapped.column) + " in " + file_ +
+            return complain_of_key("no column " + in_quotes(mapped.column) + " in " + file_ +
                                    "; expected one of " + joined(layout_.header));
         }
         const auto cell = static_cast<std::size_t>(found - cells_.begin());
         const std::optional<std::string_view> unit = mapped.unit ? mapped.unit : found->unit;
         if (!unit) {
-            return complain_of_key("no unit, and column " + quoted(mapped.column) + " of " + file_ +
+            return complain_of_key("no unit, and column " + in_quotes(mapped.column) + " of " + file_ +
                                    " names none; expected unit = one of " + accepted_units(mapped.channel));
         }
         if (!take(cell, mapped.channel, *unit, mapped.to_unit)) {
-            complain_of_key("unit " + quoted(*unit) + " is not known for it; expected one of " +
+            complain_of_key("unit " + in_quotes(*unit) + " is not known for it; expected one of " +
                             accepted_units(mapped.channel));
         }
     }
@@ -97,10 +99,11 @@ class LayoutReader {
         const bool is_mapped = std::any_of(map_.channels.begin(), map_.channels.end(),
                                            [&](const MappedChannel& m) { return m.channel == header.name; });
         if (is_mapped || !is_channel_name(header.name)) return;
+        claimed_.emplace_back(header.name);
         if (!header.unit) {
             complain(cell, "no unit; expected name[unit], the unit one of " + accepted_units(header.name));
         } else if (!take(cell, header.name, *header.unit, {})) {
-            complain(cell, "unit " + quoted(*header.unit) + " is not known for it; expected one of " +
+            complain(cell, "unit " + in_quotes(*header.unit) + " is not known for it; expected one of " +
                                accepted_units(header.name));
         }
     }
@@ -108,7 +111,6 @@ class LayoutReader {
     // False: the channel does not accept the unit.
     bool take(std::size_t cell, std::string_view channel_name, std::string_view unit, const Linear& to_unit) {
         taken_.push_back(cell);
-        claimed_.emplace_back(channel_name);
         if (channel_name == kTimeName) {
             const std::optional<int> exponent = time_exponent(unit);
             layout_.time_cell = cell;

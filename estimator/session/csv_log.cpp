@@ -94,7 +94,7 @@ bool CsvLog::read_cell(const CsvColumn& column, std::string_view cell, Frame& fr
 
 bool CsvLog::fail_at_cell(std::size_t cell, std::string_view found, std::string_view expected) {
     const bool may_be_cut = !rows_.ended_by_break() && cell + 1 == layout_.header.size();
-    return fail(cell, "found " + quoted(found) + "; expected " + std::string(expected) +
+    return fail(cell, "found " + in_quotes(found) + "; expected " + std::string(expected) +
                           (may_be_cut ? "; the file ends here, in the middle of a row" : ""));
 }
 

@@ -8,8 +8,9 @@
 namespace holdfast::session {
 namespace {
 
-constexpr std::size_t kBufferBytes = 256 * 1024;
-constexpr std::size_t kLongestRow = 4 * 1024 * 1024;  // a longer one is a quote that is never closed
+constexpr std::size_t kBufferBytes = std::size_t{256} * 1024;
+constexpr std::size_t kLongestRow =
+    std::size_t{4} * 1024 * 1024;  // a longer one is a quote that is never closed
 constexpr std::string_view kByteOrderMark = "\xef\xbb\xbf";
 
 std::size_t count(std::string_view text, char c) {

@@ -11,7 +11,7 @@
 namespace holdfast::session {
 namespace {
 
-constexpr std::size_t kFlushBytes = 64 * 1024;
+constexpr std::size_t kFlushBytes = std::size_t{64} * 1024;
 
 std::string column_name(Channel channel, const StreamInfo& stream) {
     if (is_ride_height(channel)) {

@@ -12,9 +12,9 @@ std::string to_string(const Error& error) {
     if (error.line > 0) text += ", line " + std::to_string(error.line);
     if (error.column > 0) {
         text += ", column " + std::to_string(error.column);
-        if (!error.name.empty()) text += " " + quoted(error.name);
+        if (!error.name.empty()) text += " " + in_quotes(error.name);
     } else if (!error.name.empty()) {
-        text += ", key " + quoted(error.name);
+        text += ", key " + in_quotes(error.name);
     }
     if (!text.empty()) text += ": ";
     return text + error.message;
@@ -26,7 +26,7 @@ std::string to_string(const Errors& errors) {
     return text;
 }
 
-std::string quoted(std::string_view text) {
+std::string in_quotes(std::string_view text) {
     constexpr std::size_t kLongest = 60;
     std::string shown = "\"";
     for (const char c : text.substr(0, kLongest)) {

@@ -26,7 +26,7 @@ using Errors = std::vector<Error>;
 [[nodiscard]] std::string to_string(const Errors& errors);
 
 // Text of the input as it may stand in a message: quoted, control characters escaped, shortened.
-[[nodiscard]] std::string quoted(std::string_view text);
+[[nodiscard]] std::string in_quotes(std::string_view text);
 // Shortest text that reads back as the same number.
 [[nodiscard]] std::string number_text(double value);
 // "a, b, c".

@@ -9,7 +9,7 @@
 
 namespace holdfast::session {
 namespace {
-constexpr std::size_t kBlockBytes = 256 * 1024;
+constexpr std::size_t kBlockBytes = std::size_t{256} * 1024;
 }
 
 RawFile::RawFile(std::string path, Handle file)

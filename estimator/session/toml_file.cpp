@@ -64,7 +64,7 @@ std::string TomlEntry::key() const {
 
 std::string describe(const TomlEntry& entry) {
     if (const double* number = entry.number()) return "the number " + number_text(*number);
-    if (const std::string* text = entry.text()) return "the text " + quoted(*text);
+    if (const std::string* text = entry.text()) return "the text " + in_quotes(*text);
     if (entry.is_table()) return "a table";
     return "a value of type " + std::get<TomlOther>(entry.value).type;
 }

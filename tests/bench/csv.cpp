@@ -3,12 +3,14 @@
 // and zstd.
 //   bench_csv         makes the log itself (no meaning in its numbers, only their usual lengths and blanks)
 //   bench_csv LOG...  reads these instead
+#include <stdlib.h>
+
+#include <algorithm>
 #include <chrono>
 #include <cmath>
 #include <cstdio>
 #include <filesystem>
 #include <iostream>
-#include <iterator>
 #include <string>
 #include <vector>
 
@@ -107,7 +109,7 @@ int main(int argc, char** argv) {
         return 0;
     }
     std::string folder = (std::filesystem::temp_directory_path() / "bench_csv_XXXXXX").string();
-    if (mkdtemp(folder.data()) == nullptr) return 1;
+    if (::mkdtemp(folder.data()) == nullptr) return 1;
     const std::string text = make_log();
     for (const char* name : {"/log.csv", "/log.csv.gz", "/log.csv.zst"}) {
         auto sink = session::ByteSink::create(folder + name);
