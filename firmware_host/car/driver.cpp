@@ -46,8 +46,10 @@ void Driver::decide(const DriverView& view) {
             break;
         case Doing::full_throttle:
         case Doing::lifting:
+            if (in_corner_ && !corner_here)
+                plan_straight(view);  // came out of a corner that needed no brakes
+            in_corner_ = corner_here;
             if (brakes_within(0.0, view)) {
-                in_corner_ = corner_here;
                 braking_s_ = 0.0;
                 doing_ = planned_braking_mps2(view) > 0.0 ? Doing::braking : Doing::cornering;
             } else if (parameters_.lift_s > 0.0 && brakes_within(parameters_.lift_s, view)) {
@@ -67,6 +69,7 @@ void Driver::decide(const DriverView& view) {
                 doing_ = Doing::braking;
             } else if (in_corner_ && !corner_here) {
                 doing_ = Doing::full_throttle;
+                in_corner_ = false;
                 plan_straight(view);
             }
             break;
@@ -91,6 +94,7 @@ void Driver::plan_straight(const DriverView& view) {
     flap_wait_s_ = std::max(0.1, random_.normal(parameters_.flap_wait_s, parameters_.flap_wait_sd_s));
     gap_s_ = random_.uniform(parameters_.gap_least_s, parameters_.gap_most_s);
     keep_shut_ = false;
+    closed_here_ = false;
     draw_closing(zone);
     const int lap = view.lap + (plan_.zone_is_next_lap(view.lap_distance_m) ? 1 : 0);
     if (const PlannedClosing* plan = planned(lap, zone)) {
@@ -139,14 +143,25 @@ bool Driver::brakes_within(double seconds, const DriverView& view) const {
 void Driver::work_flap(const DriverView& view, double dt_s) {
     const double lead_s = flap_.actuator_delay_s + closing_.travel_s + gap_s_;
     if (controls_.flap_open) {
-        if (doing_ != Doing::full_throttle || brakes_within(lead_s, view)) controls_.flap_open = false;
+        if (doing_ != Doing::full_throttle || brakes_within(lead_s, view)) {
+            controls_.flap_open = false;
+            closed_here_ = true;
+        }
         return;
     }
-    full_throttle_s_ =
-        doing_ == Doing::full_throttle && controls_.throttle >= 1.0 ? full_throttle_s_ + dt_s : 0.0;
-    controls_.flap_open = full_throttle_s_ > flap_wait_s_ && !keep_shut_ &&
+    const bool flat_out = doing_ == Doing::full_throttle && controls_.throttle >= 1.0;
+    full_throttle_s_ = flat_out ? full_throttle_s_ + dt_s : 0.0;
+    controls_.flap_open = full_throttle_s_ > flap_wait_s_ && !keep_shut_ && !closed_here_ &&
                           circuit_.segment(view.lap_distance_m).flap_allowed &&
-                          !brakes_within(lead_s + kLeastOpenS, view);
+                          clear_for(lead_s + kLeastOpenS, view);
+}
+
+bool Driver::clear_for(double seconds, const DriverView& view) const {
+    constexpr double kLookS = 0.1;
+    for (double t = 0.0; t < seconds; t += kLookS) {
+        if (brakes_within(t, view)) return false;
+    }
+    return !brakes_within(seconds, view);
 }
 
 void Driver::work_throttle(const DriverView& view, double dt_s) {
@@ -161,7 +176,7 @@ void Driver::work_throttle(const DriverView& view, double dt_s) {
             const double target = doing_ == Doing::rolling_out ? parameters_.start_speed_mps
                                                                : plan_.limit_mps(view.lap_distance_m);
             const double force = view.resistance_n + 2.0 * view.mass_kg * (target - view.speed_mps);
-            asked = std::clamp(force / full_n, 0.0, 1.0);
+            asked = std::clamp(force / std::max(1.0, full_n), 0.0, 1.0);
             break;
         }
         case Doing::lifting:

@@ -51,7 +51,9 @@ class Driver {
     [[nodiscard]] const PlannedClosing* planned(int lap, int zone) const;
     [[nodiscard]] double limit_mps(const DriverView& view) const;
     [[nodiscard]] double planned_braking_mps2(const DriverView& view) const;
+    // Whether the speed expected in so many seconds is over the plan there; and whether none is until then.
     [[nodiscard]] bool brakes_within(double seconds, const DriverView& view) const;
+    [[nodiscard]] bool clear_for(double seconds, const DriverView& view) const;
     void work_flap(const DriverView& view, double dt_s);
     void work_throttle(const DriverView& view, double dt_s);
     void work_brakes(const DriverView& view, double dt_s);
@@ -69,8 +71,9 @@ class Driver {
     Doing doing_ = Doing::rolling_out;
     Controls controls_;
     Closing closing_;
-    bool in_corner_ = false;  // since the last braking
+    bool in_corner_ = false;  // now, or since the last braking
     bool keep_shut_ = false;
+    bool closed_here_ = false;    // the flap was open on this straight already
     double brake_shift_m_ = 0.0;  // this lap's brake point against the plan's, positive earlier
     double gap_s_ = 0.2;          // flap shut to brake onset
     double flap_wait_s_ = 1.0;

@@ -71,6 +71,18 @@ constexpr Variant kVariants[] = {
      [](Scenario& s, Wishes&) { s.flap.shape = Reattachment::separation_point; }},
     {"tail", "flow comes back with a slow tail",
      [](Scenario& s, Wishes&) { s.flap.shape = Reattachment::slow_tail; }},
+    {"demo", "3 laps, 8 closings: two slow, one of these with the brakes close behind",
+     [](Scenario& s, Wishes&) {
+         s.laps = 3;
+         s.driver.slow_probability = 0.0;
+         PlannedClosing slow_in_time{.lap = 2, .zone = 3};
+         slow_in_time.tau_factor = 2.4;
+         slow_in_time.gap_s = 0.42;
+         PlannedClosing slow_and_short{.lap = 3, .zone = 1};
+         slow_and_short.tau_factor = 3.0;
+         slow_and_short.gap_s = 0.16;
+         s.planned = {slow_in_time, slow_and_short, {.lap = 1, .zone = 1, .keep_shut = true}};
+     }},
     {"long", "20 laps", [](Scenario& s, Wishes&) { s.laps = 20; }},
 };
 
