@@ -63,10 +63,11 @@ void Run::finish(bool complete, std::string reason) {
 }
 
 void Run::hand_on_events() {
-    while (const auto closure = engine_->take_closure())
-        for (Sink* sink : sinks_) sink->on_closure(*closure);
+    // Alarms first: they are urgent, and may speak of a closing whose record comes later.
     while (const auto alarm = engine_->take_alarm())
         for (Sink* sink : sinks_) sink->on_alarm(*alarm);
+    while (const auto closure = engine_->take_closure())
+        for (Sink* sink : sinks_) sink->on_closure(*closure);
 }
 
 void Run::hand_on_health(std::int64_t time_ns) {
