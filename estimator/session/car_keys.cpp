@@ -145,7 +145,7 @@ std::string sd_text(const CarKey& key) {
         case DefaultSd::Kind::exact:
             return "exact";
         case DefaultSd::Kind::absolute:
-            return number_text(key.sd.size) + " " + std::string(key.unit);
+            return number_text(key.sd.size) + (key.unit == "-" ? "" : " " + std::string(key.unit));
         case DefaultSd::Kind::share_of_value:
             break;
     }

@@ -67,7 +67,7 @@ TEST_CASE("time survives the way to text and back") {
 }
 
 TEST_CASE("a mapped time is scaled and shifted before it is taken in its unit") {
-    const TimeCell cell = parse_mapped_time("300", {0.01, -1.0}, 9);
+    const TimeCell cell = parse_mapped_time("300", {.scale = 0.01, .offset = -1.0}, 9);
     REQUIRE(cell.status == Status::ok);
     CHECK(cell.time_ns == 2'000'000'000);
 }

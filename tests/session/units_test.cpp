@@ -2,6 +2,7 @@
 #include "estimator/session/units.hpp"
 
 #include <catch2/catch.hpp>
+#include <cmath>
 
 namespace holdfast::session {
 namespace {
@@ -111,6 +112,14 @@ TEST_CASE("names of channels") {
     CHECK_FALSE(is_channel_name("flap_angle"));  // logged as flap_position[deg]
     CHECK(find_unit("flap_position", "deg")->channel == Channel::flap_angle);
     CHECK(find_unit("flap_position", "%")->channel == Channel::flap_position);
+}
+
+TEST_CASE("one conversion after another") {
+    const Linear both = compose({.scale = 2.0, .offset = 36.0}, find_unit("speed", "km/h")->to_si);
+    CHECK(both(180.0) == Approx(110.0));
+    const Linear warm = compose({.scale = 0.1, .offset = -40.0}, find_unit("air_temperature", "degC")->to_si);
+    CHECK(warm(650.0) == Approx(298.15));
+    CHECK(std::signbit(compose({}, {})(-0.0)));
 }
 
 TEST_CASE("a unit of 1 keeps every bit, the sign of zero too") {
