@@ -3,6 +3,8 @@
 
 #include <algorithm>
 
+#include "estimator/session/needed_channels.hpp"
+
 namespace holdfast::session {
 namespace {
 
@@ -18,6 +20,16 @@ bool at_front(const core::RideHeightSensor& sensor, const core::Car& car) {
 
 Errors check_against(const CarFile& car_file, const StreamInfo& stream) {
     Errors errors;
+    const auto has = [&](Channel channel) { return ((stream.channels >> index(channel)) & 1U) != 0; };
+    std::vector<std::string> missing;
+    for (const Channel channel : kNeededChannels) {
+        const bool as_angle = channel == Channel::flap_position && has(Channel::flap_angle);
+        if (!has(channel) && !as_angle) missing.emplace_back(info(channel).name);
+    }
+    if (!missing.empty()) {
+        errors.push_back(
+            {stream.origin, 0, 0, "", "needed but not there: " + joined(missing) + "; expected all of them"});
+    }
     for (const bool front : {true, false}) {
         std::vector<std::string> placed;
         bool found = false;
@@ -39,8 +51,7 @@ Errors check_against(const CarFile& car_file, const StreamInfo& stream) {
                                   " (placed by " + car_file.file + ")"});
         }
     }
-    const bool logs_angle = ((stream.channels >> index(Channel::flap_angle)) & 1U) != 0;
-    if (logs_angle && !car_file.car.flap_angles_known) {
+    if (has(Channel::flap_angle) && !car_file.car.flap_angles_known) {
         errors.push_back({car_file.file, 0, 0, "flap.closed_angle",
                           "missing, and " + stream.origin +
                               " has flap_position as an angle; expected closed_angle and "

@@ -13,8 +13,8 @@
 
 namespace holdfast::session {
 
-// What the stream lacks for this car: a placed ride height at each axle, and both of the flap's end angles
-// where its position is logged as an angle. Empty: nothing.
+// What the stream lacks for this car: a needed channel, a placed ride height at each axle, and both of the
+// flap's end angles where its position is logged as an angle. Empty: nothing.
 [[nodiscard]] Errors check_against(const CarFile& car_file, const StreamInfo& stream);
 
 struct BoundCar {

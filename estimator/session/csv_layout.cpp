@@ -2,11 +2,11 @@
 #include "estimator/session/csv_layout.hpp"
 
 #include <algorithm>
-#include <array>
 #include <optional>
 #include <utility>
 
 #include "estimator/session/cell.hpp"
+#include "estimator/session/needed_channels.hpp"
 
 namespace holdfast::session {
 namespace {
@@ -24,9 +24,6 @@ HeaderCell split_header_cell(std::string_view cell) {
     return {text, trimmed(text.substr(0, bracket)),
             trimmed(text.substr(bracket + 1, text.size() - bracket - 2))};
 }
-
-constexpr std::array kNeeded{Channel::speed,   Channel::load_fl, Channel::load_fr,
-                             Channel::load_rl, Channel::load_rr, Channel::flap_position};
 
 class LayoutReader {
   public:
@@ -143,7 +140,7 @@ class LayoutReader {
                 missing.emplace_back(name);
         };
         need(kTimeName);
-        for (const Channel channel : kNeeded) need(info(channel).name);
+        for (const Channel channel : kNeededChannels) need(info(channel).name);
         const bool has_ride_height =
             std::any_of(claimed_.begin(), claimed_.end(),
                         [](const std::string& name) { return name.starts_with(kRideHeightPrefix); });

@@ -14,12 +14,8 @@ namespace {
 constexpr std::size_t kFlushBytes = std::size_t{64} * 1024;
 
 std::string column_name(Channel channel, const StreamInfo& stream) {
-    if (is_ride_height(channel)) {
-        return std::string(kRideHeightPrefix) +
-               stream.ride_height_names[index(channel) - index(Channel::ride_height_0)];
-    }
     const bool is_angle = channel == Channel::flap_angle;
-    return std::string(info(is_angle ? Channel::flap_position : channel).name);
+    return channel_name(is_angle ? Channel::flap_position : channel, stream.ride_height_names);
 }
 
 // RFC 4180: a cell with a comma, a quote or a line break is quoted, its quotes doubled.

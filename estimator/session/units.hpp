@@ -8,12 +8,11 @@
 #include <string>
 #include <string_view>
 
-#include "proto/vocabulary/channel.hpp"
+#include "proto/vocabulary/frame.hpp"
 
 namespace holdfast::session {
 
 inline constexpr std::string_view kTimeName = "t";
-inline constexpr std::string_view kRideHeightPrefix = "ride_height_";
 
 // value in SI = scale * value in the unit + offset. -0.0 is the neutral offset: it keeps the sign of a zero.
 struct Linear {

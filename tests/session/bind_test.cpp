@@ -3,6 +3,7 @@
 
 #include <catch2/catch.hpp>
 
+#include "estimator/session/needed_channels.hpp"
 #include "tests/session/small_car.hpp"
 #include "tests/session/small_log.hpp"
 
@@ -21,8 +22,10 @@ CarFile small_car(const std::string& flap = "") {
     return *car;
 }
 
+// With every channel that is needed.
 StreamInfo stream_with(std::vector<std::string> names) {
     StreamInfo stream;
+    for (const Channel channel : kNeededChannels) stream.channels |= std::uint64_t{1} << index(channel);
     stream.ride_height_names = std::move(names);
     stream.origin = "log.csv";
     return stream;
@@ -75,9 +78,21 @@ TEST_CASE("an axle without a ride height is an error that says which would do") 
     CHECK_THAT(unplaced[0].message, Contains("no sensor at the front axle"));
 }
 
+TEST_CASE("a stream that lacks a needed channel is an error that names it") {
+    for (const Channel channel : kNeededChannels) {
+        StreamInfo stream = stream_with({"front", "rear_left"});
+        stream.channels &= ~(std::uint64_t{1} << index(channel));
+        const Errors errors = check_against(small_car(), stream);
+        REQUIRE(errors.size() == 1);
+        CHECK(errors[0].file == "log.csv");
+        CHECK_THAT(errors[0].message, Contains(std::string(info(channel).name)) && Contains("expected"));
+    }
+}
+
 TEST_CASE("a flap angle needs both ends of travel in the car file") {
     StreamInfo stream = stream_with({"front", "rear_left"});
     stream.channels |= std::uint64_t{1} << index(Channel::flap_angle);
+    stream.channels &= ~(std::uint64_t{1} << index(Channel::flap_position));
     const Errors errors = check_against(small_car(), stream);
     REQUIRE(errors.size() == 1);
     CHECK_THAT(errors[0].file, Catch::EndsWith("car.toml"));
