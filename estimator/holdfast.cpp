@@ -52,7 +52,7 @@ int main(int argc, char** argv) {
 
     ReplayOptions replaying;
     CLI::App* replay_words =
-        command(app, "replay", "Estimate from a log (.csv, .csv.gz, .csv.zst or recording)");
+        command(app, "replay", "Estimate from a log (.csv, .csv.gz, .csv.zst or recording .hfr)");
     replay_words->add_option("log", replaying.log, "The log")->required();
     add_results(*replay_words, replaying.results);
     add_log_reading(*replay_words, replaying.channels, replaying.strict);
@@ -75,7 +75,7 @@ int main(int argc, char** argv) {
         command(app, "convert", "Turn a CSV log into a recording or back, losing nothing");
     convert_words->add_option("in", converting.in, "The log to read")->required();
     convert_words
-        ->add_option("out", converting.out, "The log to write: .csv, .csv.gz, .csv.zst, or else a recording")
+        ->add_option("out", converting.out, "The log to write: .hfr (recording), .csv, .csv.gz or .csv.zst")
         ->required();
     add_log_reading(*convert_words, converting.channels, converting.strict);
 

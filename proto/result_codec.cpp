@@ -9,7 +9,6 @@
 namespace holdfast::proto {
 namespace {
 
-constexpr std::string_view kRideHeightPrefix = "ride_height_";
 
 void put(const MessageId& id, wire::Id& into) {
     into.set_stream_id(id.stream_id);
@@ -287,13 +286,6 @@ Result<HealthMessage> decode_health(std::string_view bytes) {
         out.ride_height_names[slot] = health.channel().name().substr(kRideHeightPrefix.size());
     }
     return out;
-}
-
-std::string channel_name(Channel channel, const std::vector<std::string>& ride_height_names) {
-    if (!is_ride_height(channel)) return std::string(info(channel).name);
-    const std::size_t slot = index(channel) - index(Channel::ride_height_0);
-    return std::string(kRideHeightPrefix) +
-           (slot < ride_height_names.size() ? ride_height_names[slot] : std::to_string(slot));
 }
 
 }  // namespace holdfast::proto

@@ -45,7 +45,4 @@ struct HealthMessage {
 [[nodiscard]] Result<AlarmMessage> decode_alarm(std::string_view bytes);
 [[nodiscard]] Result<HealthMessage> decode_health(std::string_view bytes);
 
-// "speed", or "ride_height_NAME" with the stream's name of that slot (its number where the stream has none).
-[[nodiscard]] std::string channel_name(Channel channel, const std::vector<std::string>& ride_height_names);
-
 }  // namespace holdfast::proto

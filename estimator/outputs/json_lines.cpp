@@ -44,7 +44,7 @@ std::string alarm_json(const core::Alarm& alarm, const StreamInfo& stream) {
             break;
         case core::AlarmKind::data_stale:
         case core::AlarmKind::sensor_distrusted:
-            j["channel"] = channel_word(alarm.channel, stream);
+            j["channel"] = channel_name(alarm.channel, stream.ride_height_names);
             break;
         case core::AlarmKind::unknown_at_brakes:
             j["probability"] = nullptr;

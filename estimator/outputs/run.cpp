@@ -4,6 +4,7 @@
 #include <cmath>
 #include <utility>
 
+#include "estimator/core/engine.hpp"
 #include "estimator/outputs/text.hpp"
 
 namespace holdfast::outputs {
@@ -25,6 +26,8 @@ Run::Run(const core::Car& car, const core::Settings& settings, double rate_hz, s
     : engine_(std::make_unique<core::Engine>(car, settings)),
       period_ns_(std::llround(1e9 / rate_hz)),
       sinks_(std::move(sinks)) {}
+
+Run::~Run() = default;
 
 void Run::step(const Frame& frame) {
     switch (engine_->step(frame)) {

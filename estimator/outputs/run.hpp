@@ -8,9 +8,14 @@
 #include <memory>
 #include <vector>
 
-#include "estimator/core/engine.hpp"
+#include "estimator/core/car.hpp"
+#include "estimator/core/settings.hpp"
 #include "estimator/outputs/sink.hpp"
 #include "proto/vocabulary/frame.hpp"
+
+namespace holdfast::core {
+class Engine;  // its header brings the linear algebra with it
+}
 
 namespace holdfast::outputs {
 
@@ -22,12 +27,14 @@ class Run {
     // must outlive the run.
     Run(const core::Car& car, const core::Settings& settings, double rate_hz, std::vector<Sink*> sinks);
 
+    ~Run();
+    Run(const Run&) = delete;
+    Run& operator=(const Run&) = delete;
+
     void step(const Frame& frame);
 
     // The input has ended. With complete = false, `reason` says in words why it is not whole.
     void finish(bool complete, std::string reason = {});
-
-    [[nodiscard]] const core::Engine& engine() const { return *engine_; }
 
   private:
     void hand_on_events();

@@ -51,7 +51,8 @@ Json channels(const core::HealthTable& health, const StreamInfo& stream) {
     for (std::size_t i = 0; i < kChannelCount; ++i) {
         const auto c = static_cast<Channel>(i);
         const bool announced = ((stream.channels >> i) & 1U) != 0;
-        if (announced || health[i].samples > 0) j[channel_word(c, stream)] = channel(c, health[i]);
+        if (announced || health[i].samples > 0)
+            j[channel_name(c, stream.ride_height_names)] = channel(c, health[i]);
     }
     return j;
 }

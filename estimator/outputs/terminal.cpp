@@ -51,9 +51,10 @@ std::string alarm_words(const core::Alarm& alarm, const StreamInfo& stream) {
                    fixed(alarm.probability, 2) + ")";
         case core::AlarmKind::data_stale:
             return "data stale, everything is unknown until they return: " +
-                   channel_word(alarm.channel, stream);
+                   channel_name(alarm.channel, stream.ride_height_names);
         case core::AlarmKind::sensor_distrusted:
-            return "sensor distrusted, left out of the estimate: " + channel_word(alarm.channel, stream);
+            return "sensor distrusted, left out of the estimate: " +
+                   channel_name(alarm.channel, stream.ride_height_names);
     }
     return "unknown alarm";
 }
@@ -80,8 +81,8 @@ std::string sensors_lines(const Tally& tally, const StreamInfo& stream) {
     for (std::size_t i = 0; i < kChannelCount; ++i) {
         const core::ChannelHealth& h = tally.health[i];
         if (h.trust != core::Trust::distrusted) continue;
-        text += "  sensor distrusted: " + channel_word(static_cast<Channel>(i), stream) + " (" +
-                std::string(word(h.fault)) + ") since " + fixed(seconds(h.since_ns), 1) + " s\n";
+        text += "  sensor distrusted: " + channel_name(static_cast<Channel>(i), stream.ride_height_names) +
+                " (" + std::string(word(h.fault)) + ") since " + fixed(seconds(h.since_ns), 1) + " s\n";
     }
     return text;
 }

@@ -91,15 +91,6 @@ std::string_view word(core::Fault fault) {
     return "unknown";
 }
 
-std::string channel_word(Channel channel, const StreamInfo& stream) {
-    std::string name(info(channel).name);
-    if (!is_ride_height(channel)) return name;
-    const std::size_t slot = index(channel) - index(Channel::ride_height_0);
-    name += '_';
-    name += slot < stream.ride_height_names.size() ? stream.ride_height_names[slot] : std::to_string(slot);
-    return name;
-}
-
 std::string_view verdict_cell(const core::Closure& closure) {
     return closure.braked ? word(closure.verdict) : std::string_view{};
 }

@@ -7,7 +7,6 @@
 #include <string_view>
 
 #include "estimator/core/results.hpp"
-#include "proto/vocabulary/frame.hpp"
 
 namespace holdfast::outputs {
 
@@ -19,9 +18,6 @@ namespace holdfast::outputs {
 [[nodiscard]] std::string_view word(core::AlarmKind kind);
 [[nodiscard]] std::string_view word(core::Trust trust);
 [[nodiscard]] std::string_view word(core::Fault fault);
-
-// The channel as its log calls it: a ride height by its own name ("ride_height_front").
-[[nodiscard]] std::string channel_word(Channel channel, const StreamInfo& stream);
 
 // Verdict for a file: empty where no braking followed, for then there is nothing to judge; "unclear" where
 // brakes came but the data could not tell.

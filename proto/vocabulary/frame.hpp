@@ -6,6 +6,7 @@
 #include <array>
 #include <cstdint>
 #include <string>
+#include <string_view>
 #include <vector>
 
 #include "proto/vocabulary/channel.hpp"
@@ -13,8 +14,8 @@
 namespace holdfast {
 
 struct Frame {
-    std::int64_t time_ns = 0;    // the source's time since its log or stream began
-    std::uint64_t present = 0;   // bit index(channel): a new sample of that channel stands in value
+    std::int64_t time_ns = 0;   // the source's time since its log or stream began
+    std::uint64_t present = 0;  // bit index(channel): a new sample of that channel stands in value
     std::array<double, kChannelCount> value{};  // SI; may be non-finite: the reader counts, it does not judge
 
     [[nodiscard]] bool has(Channel c) const { return ((present >> index(c)) & 1U) != 0; }
@@ -34,5 +35,17 @@ struct StreamInfo {
     std::uint64_t channels = 0;  // bits as in Frame::present: channels that the source says it has
     std::string origin;          // human-readable: file name or node
 };
+
+inline constexpr std::string_view kRideHeightPrefix = "ride_height_";
+
+// The channel as its stream calls it: "speed", or "ride_height_NAME" (the slot's number where it has no
+// name).
+[[nodiscard]] inline std::string channel_name(Channel channel,
+                                              const std::vector<std::string>& ride_height_names) {
+    if (!is_ride_height(channel)) return std::string(info(channel).name);
+    const std::size_t slot = index(channel) - index(Channel::ride_height_0);
+    return std::string(kRideHeightPrefix) +
+           (slot < ride_height_names.size() ? ride_height_names[slot] : std::to_string(slot));
+}
 
 }  // namespace holdfast

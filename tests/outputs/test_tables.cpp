@@ -125,9 +125,3 @@ TEST_CASE("every flag has a word of its own") {
     CHECK(seen.count("") == 0);
     CHECK(outputs::flag_words(0).empty());
 }
-
-TEST_CASE("a ride height goes by its own name") {
-    const StreamInfo stream{.ride_height_names = {"front", "rear_left"}, .channels = 0, .origin = {}};
-    CHECK(outputs::channel_word(Channel::load_fl, stream) == "load_fl");
-    CHECK(outputs::channel_word(ride_height_channel(1), stream) == "ride_height_rear_left");
-}
