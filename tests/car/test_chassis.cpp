@@ -102,6 +102,15 @@ TEST_CASE("a left turn loads the right tyres by m a h in all and lifts the left 
     const double rear_nm =
         0.5 * p.rear.track_m * (chassis.tyre_load_n(kRearRight) - chassis.tyre_load_n(kRearLeft));
     CHECK(front_nm + rear_nm == Approx(p.mass_kg * 12.0 * p.cg_height_m).epsilon(1e-4));
+    // The springs are spared what passes through the roll centres.
+    const double springs_nm =
+        0.5 * p.front.track_m *
+            (chassis.suspension_load_n(kFrontRight) - chassis.suspension_load_n(kFrontLeft)) +
+        0.5 * p.rear.track_m * (chassis.suspension_load_n(kRearRight) - chassis.suspension_load_n(kRearLeft));
+    const double links_nm =
+        p.mass_kg * 12.0 *
+        (p.front_weight_share * p.front.roll_centre_m + (1.0 - p.front_weight_share) * p.rear.roll_centre_m);
+    CHECK(springs_nm == Approx(front_nm + rear_nm - links_nm).epsilon(1e-4));
     CHECK(chassis.roll_rad() > 0.0);
 }
 

@@ -3,6 +3,7 @@
 #include <bit>
 #include <catch2/catch.hpp>
 #include <cmath>
+#include <numbers>
 #include <sstream>
 
 #include "firmware_host/car/aero.hpp"
@@ -33,7 +34,7 @@ void drive_to(Outing& outing, double time_s) {
     Frame frame;
     do {
         REQUIRE(outing.next(frame));
-    } while (frame.time_s() < time_s - 1e-9);
+    } while (frame.time_s() < time_s - 1e-9);  // at least one frame
 }
 
 double load_n(const Outing& outing, Channel left) {
@@ -115,6 +116,87 @@ TEST_CASE("drive, brakes and resistance account for the car's momentum over a la
     CHECK(worst_n < 120.0);
     CHECK(braking_ns > 100e3);
     CHECK(impulse_ns == Approx(momentum_ns).margin(0.005 * braking_ns));
+}
+
+TEST_CASE("course, yaw rate and side force belong together, and a lap turns once round, seed 6") {
+    Scenario s = make_scenario("open_wheel-perfect-full", 6);
+    s.laps = 1;
+    Outing outing(s);
+    Frame frame;
+    double turned_rad = 0.0;
+    double course_turned_rad = 0.0;
+    double course_before_rad = 0.0;
+    while (outing.next(frame)) {
+        const auto& now = outing.true_values();
+        const double yaw_rate = now[index(Channel::yaw_rate)];
+        turned_rad += yaw_rate * 0.0025;
+        course_turned_rad +=
+            std::remainder(now[index(Channel::heading)] - course_before_rad, 2.0 * std::numbers::pi);
+        course_before_rad = now[index(Channel::heading)];
+        if (outing.truth().empty() || frame.time_s() - outing.truth().back().time_s > 1e-6) continue;
+        REQUIRE(now[index(Channel::accel_y)] ==
+                Approx(yaw_rate * outing.truth().back().speed_mps).margin(1e-9));
+    }
+    CHECK(turned_rad == Approx(2.0 * std::numbers::pi).margin(0.02));  // to the left
+    CHECK(course_turned_rad == Approx(-turned_rad).margin(0.02));      // clockwise from north
+}
+
+TEST_CASE("wheels that drive turn faster than the road, wheels that brake slower") {
+    Scenario s = make_scenario("open_wheel-perfect", 6);
+    s.laps = 1;
+    Outing outing(s);
+    Frame frame;
+    double driving = 0.0;
+    double braking = 0.0;
+    while (outing.next(frame)) {
+        if (outing.truth().empty() || frame.time_s() - outing.truth().back().time_s > 1e-6) continue;
+        const auto& now = outing.true_values();
+        const double slip = now[index(Channel::speed)] / outing.truth().back().speed_mps - 1.0;
+        driving = std::max(driving, slip);
+        braking = std::min(braking, slip);
+    }
+    CHECK(driving == Approx(s.chassis.slip_drive_pn * s.driver.drive_limit_n).epsilon(0.1));
+    CHECK(braking < -0.005);
+    CHECK(braking > -0.02);
+}
+
+TEST_CASE("fuel goes by the distance and comes off the springs") {
+    Scenario s = straight_road(30.0);
+    s.chassis.fuel_per_lap_kg = 200.0;  // a lap is 20 km
+    s.aero.front.area_m2 = s.aero.rear.area_m2 = 0.0;
+    s.aero.front_per_pitch_m2prad = 0.0;
+    Outing outing(s);
+    drive_to(outing, 1.0);
+    const double early_n = load_n(outing, Channel::load_fl) + load_n(outing, Channel::load_rl);
+    drive_to(outing, 101.0);
+    const double late_n = load_n(outing, Channel::load_fl) + load_n(outing, Channel::load_rl);
+    CHECK(early_n - late_n == Approx(200.0 * 3000.0 / 20000.0 * kGravity).epsilon(0.01));
+}
+
+TEST_CASE("a ride height is measured to the road under its own sensor") {
+    Scenario s = straight_road(16.0);
+    s.circuit.kerbs = {{100.0, 100.0, 0.03, true}};  // the road slowly rises on the left and falls again
+    s.ride_heights = {{"left", 0.08, 0.0, 0.5 * s.chassis.front.track_m},
+                      {"right", 0.08, 0.0, -0.5 * s.chassis.front.track_m},
+                      {"ahead", 0.08, 1.0, 0.5 * s.chassis.front.track_m}};
+    s.sensors[index(ride_height_channel(2))] = s.sensors[index(ride_height_channel(0))];
+    Outing outing(s);
+    drive_to(outing, 3.0);
+    const auto height = [&](std::size_t slot) {
+        return outing.true_values()[index(ride_height_channel(slot))];
+    };
+    const double left_before = height(0);
+    const double right_before = height(1);
+    const double ahead_before = height(2);
+    // At the top the car has tilted with the road: 30 mm on one side, and each side keeps its height.
+    while (outing.true_values()[index(Channel::lap_distance)] < 150.0) drive_to(outing, 0.0);
+    CHECK(height(0) == Approx(left_before).margin(0.004));
+    CHECK(height(1) == Approx(right_before).margin(0.004));
+    // On the way down the road a metre ahead lies lower by its slope; the body, on both sides, leans half as
+    // much.
+    while (outing.true_values()[index(Channel::lap_distance)] < 175.0) drive_to(outing, 0.0);
+    const double slope = 0.015 * std::numbers::pi / 50.0;
+    CHECK((height(2) - ahead_before) - (height(0) - left_before) == Approx(0.5 * slope).margin(0.2 * slope));
 }
 
 TEST_CASE("the same scenario gives the same bits, another seed gives others") {
