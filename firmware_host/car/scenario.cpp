@@ -49,7 +49,7 @@ constexpr Variant kVariants[] = {
      }},
     {"rough", "as rough as a circuit gets", [](Scenario& s, Wishes&) { s.road.roughness_m3 = 8e-6; }},
     {"noisy", "sensors two and a half times as bad", [](Scenario&, Wishes& w) { w.sensor_scale = 2.5; }},
-    {"perfect", "sensors without errors", [](Scenario&, Wishes& w) { w.sensor_scale = 0.0; }},
+    {"perfect", "sensors without errors but their steps", [](Scenario&, Wishes& w) { w.sensor_scale = 0.0; }},
     {"full", "with accel_z, pitot, heading and yaw rate",
      [](Scenario&, Wishes& w) { w.extra_sensors = true; }},
     {"bare", "only the channels that are needed", [](Scenario&, Wishes& w) { w.bare = true; }},

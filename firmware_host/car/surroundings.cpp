@@ -75,6 +75,7 @@ SensorTable draw_sensors(std::size_t ride_heights, double scale, Random& random)
     constexpr double kSlowHz = 100.0;
     constexpr double kWeatherHz = 1.0;
     SensorTable table{};
+    // Steps are powers of two, as those of converters are; short mantissas also pack well into a recording.
     // Gain error, offset and drift are given as standard deviations and drawn.
     const auto fit = [&](Channel c, double rate_hz, double noise_sd, double gain_sd, double offset_sd,
                          double drift_sd_per_s, double resolution) {
@@ -89,40 +90,42 @@ SensorTable draw_sensors(std::size_t ride_heights, double scale, Random& random)
         sensor.resolution = resolution;
     };
     for (const Channel c : {Channel::load_fl, Channel::load_fr, Channel::load_rl, Channel::load_rr}) {
-        fit(c, kFastHz, 37.0, 0.01, 30.0, 0.05, 0.1);
+        fit(c, kFastHz, 37.0, 0.01, 30.0, 0.05, 1.0);
     }
     for (std::size_t i = 0; i < ride_heights; ++i) {
-        fit(ride_height_channel(i), kFastHz, 0.3e-3, 0.003, 0.3e-3, 0.5e-6, 1e-6);
+        fit(ride_height_channel(i), kFastHz, 0.3e-3, 0.003, 0.3e-3, 0.5e-6, 0x1p-17);
     }
-    fit(Channel::speed, kSlowHz, 0.04, 0.001, 0.0, 0.0, 1e-3);
-    fit(Channel::flap_position, kFastHz, 0.004, 0.003, 0.003, 0.0, 1e-4);
+    fit(Channel::speed, kSlowHz, 0.04, 0.001, 0.0, 0.0, 0x1p-9);
+    fit(Channel::flap_position, kFastHz, 0.004, 0.003, 0.003, 0.0, 0x1p-12);
     fit(Channel::flap_command, kFastHz, 0.0, 0.0, 0.0, 0.0, 0.0);
-    fit(Channel::brake_pressure, kSlowHz, 8e3, 0.01, 4e3, 0.0, 10.0);
-    fit(Channel::accel_x, kFastHz, 0.33, 0.005, 0.08, 0.0, 1e-3);
-    fit(Channel::accel_y, kFastHz, 0.30, 0.005, 0.08, 0.0, 1e-3);
-    fit(Channel::throttle, kSlowHz, 0.0, 0.0, 0.0, 0.0, 1e-5);
+    fit(Channel::brake_pressure, kSlowHz, 8e3, 0.01, 4e3, 0.0, 256.0);
+    fit(Channel::accel_x, kFastHz, 0.33, 0.005, 0.08, 0.0, 0x1p-7);
+    fit(Channel::accel_y, kFastHz, 0.30, 0.005, 0.08, 0.0, 0x1p-7);
+    fit(Channel::throttle, kSlowHz, 0.0, 0.0, 0.0, 0.0, 0x1p-10);
     fit(Channel::drive_force, kSlowHz, 60.0, 0.025, 40.0, 0.0, 1.0);
     fit(Channel::lap, kSlowHz, 0.0, 0.0, 0.0, 0.0, 0.0);
-    fit(Channel::lap_distance, kSlowHz, 0.0, 0.0, 0.0, 0.0, 0.1);
-    fit(Channel::air_temperature, kWeatherHz, 0.05, 0.0, 0.2, 0.0, 0.1);
-    fit(Channel::air_pressure, kWeatherHz, 5.0, 0.0, 20.0, 0.0, 10.0);
-    fit(Channel::relative_humidity, kWeatherHz, 0.002, 0.0, 0.02, 0.0, 0.01);
+    fit(Channel::lap_distance, kSlowHz, 0.0, 0.0, 0.0, 0.0, 0.125);
+    fit(Channel::air_temperature, kWeatherHz, 0.05, 0.0, 0.2, 0.0, 0x1p-4);
+    fit(Channel::air_pressure, kWeatherHz, 5.0, 0.0, 20.0, 0.0, 8.0);
+    fit(Channel::relative_humidity, kWeatherHz, 0.002, 0.0, 0.02, 0.0, 0x1p-8);
     return table;
 }
 
 void fit_extra_sensors(SensorTable& table, double scale, Random& random) {
-    const auto fit = [&](Channel c, double rate_hz, double noise_sd, double gain_sd, double offset_sd) {
+    const auto fit = [&](Channel c, double rate_hz, double noise_sd, double gain_sd, double offset_sd,
+                         double resolution) {
         SensorParameters& sensor = table[index(c)];
         sensor.fitted = true;
         sensor.rate_hz = rate_hz;
+        sensor.resolution = resolution;
         sensor.noise_sd = scale * noise_sd;
         sensor.gain_error = scale * gain_sd * random.normal();
         sensor.offset = scale * offset_sd * random.normal();
     };
-    fit(Channel::accel_z, 400.0, 0.6, 0.005, 0.08);
-    fit(Channel::pitot_pressure, 100.0, 15.0, 0.012, 5.0);
-    fit(Channel::heading, 100.0, 0.003, 0.0, 0.01);
-    fit(Channel::yaw_rate, 100.0, 0.006, 0.003, 0.003);
+    fit(Channel::accel_z, 400.0, 0.6, 0.005, 0.08, 0x1p-7);
+    fit(Channel::pitot_pressure, 100.0, 15.0, 0.012, 5.0, 1.0);
+    fit(Channel::heading, 100.0, 0.003, 0.0, 0.01, 0x1p-12);
+    fit(Channel::yaw_rate, 100.0, 0.006, 0.003, 0.003, 0x1p-12);
 }
 
 }  // namespace holdfast::sim
