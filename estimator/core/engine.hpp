@@ -1,23 +1,34 @@
 // SPDX-License-Identifier: MIT
-// The engine: one object for live and replay. Feed it frames in the order of their time; read the estimate after any
-// step; take closings and alarms as they come. No I/O, no heap, no exceptions, no clock: the same frames give the
-// same bits.
+// The engine: one object for live and replay. Feed it frames in the order of their time; read the estimate
+// after any step; take closings and alarms as they come. No I/O, no heap, no exceptions, no clock: the same
+// frames give the same bits. About 1 MB in size: do not put it on the stack.
 #pragma once
 
 #include <cstdint>
 #include <optional>
 
+#include "estimator/core/axle_heights.hpp"
+#include "estimator/core/axle_loads.hpp"
+#include "estimator/core/brake_onset.hpp"
 #include "estimator/core/car.hpp"
+#include "estimator/core/chassis_filter.hpp"
+#include "estimator/core/closure_tracker.hpp"
+#include "estimator/core/fixed_queue.hpp"
+#include "estimator/core/flap_motion.hpp"
+#include "estimator/core/intake.hpp"
+#include "estimator/core/longitudinal_filter.hpp"
 #include "estimator/core/results.hpp"
+#include "estimator/core/road_tuning.hpp"
 #include "estimator/core/settings.hpp"
+#include "estimator/core/zones.hpp"
 #include "proto/vocabulary/frame.hpp"
 
 namespace holdfast::core {
 
 enum class StepResult : std::uint8_t {
     done,
-    repeated,       // time equals the frame before: counted, left out
-    out_of_order,   // time before the frame before: counted, left out
+    repeated,      // time equals the frame before: counted, left out
+    out_of_order,  // time before the frame before: counted, left out
 };
 
 class Engine {
@@ -29,14 +40,78 @@ class Engine {
     // The input has ended: closings still being judged are judged with what there is.
     void finish();
 
-    [[nodiscard]] const Estimate& estimate() const;
-    [[nodiscard]] const HealthTable& health() const;
+    [[nodiscard]] const Estimate& estimate();
+    [[nodiscard]] const HealthTable& health() const { return intake_.health(); }
 
     // Oldest closing or alarm not yet taken.
-    [[nodiscard]] std::optional<Closure> take_closure();
-    [[nodiscard]] std::optional<Alarm> take_alarm();
+    [[nodiscard]] std::optional<Closure> take_closure() { return closures_.pop(); }
+    [[nodiscard]] std::optional<Alarm> take_alarm() { return alarms_.pop(); }
     // Closings or alarms lost because nobody took them; 0 in a sound program.
-    [[nodiscard]] std::uint64_t overrun() const;
+    [[nodiscard]] std::uint64_t overrun() const { return closures_.overrun() + alarms_.overrun(); }
+
+    // For those who look closer: tests and benchmarks.
+    [[nodiscard]] const ChassisFilter& chassis() const { return chassis_; }
+    [[nodiscard]] const LongitudinalFilter& longitudinal() const { return longitudinal_; }
+    [[nodiscard]] const RoadTuning& front_road() const { return front_road_; }
+    [[nodiscard]] const RoadTuning& rear_road() const { return rear_road_; }
+
+  private:
+    void note_slow_channels(const Frame& frame, std::uint64_t admitted);
+    void step_longitudinal(const Frame& frame, std::uint64_t admitted, double dt_s);
+    void step_flap(const Frame& frame, std::uint64_t admitted);
+    void step_chassis(const Frame& frame, std::uint64_t admitted, double dt_s);
+    void fuse_height(AxleHeights& heights, RoadTuning& tuning, ChassisState road, const Frame& frame,
+                     std::uint64_t admitted, double roll_rad);
+    void fuse_accel_z(double time_s, double measured_mps2);
+    void find_brakes(const Frame& frame, std::uint64_t admitted);
+    void watch_needed(std::int64_t time_ns);
+    void restart_motion(double time_s);
+    void collect();
+    [[nodiscard]] double dynamic_pressure_pa() const;  // as the filters believe it
+    [[nodiscard]] double measured_pressure_pa() const;
+    [[nodiscard]] double tyre_force_x_n() const;
+    [[nodiscard]] double mass_kg() const;
+    [[nodiscard]] AeroNow aero_now(double time_s) const;
+    [[nodiscard]] bool converged() const;
+
+    Car car_;
+    Settings settings_;
+    Intake intake_;
+    LongitudinalFilter longitudinal_;
+    ChassisFilter chassis_;
+    AxleHeights front_heights_, rear_heights_;
+    AxleLoads front_loads_{Channel::load_fl, Channel::load_fr};
+    AxleLoads rear_loads_{Channel::load_rl, Channel::load_rr};
+    RoadTuning front_road_, rear_road_;
+    FlapMotion flap_;
+    BrakeOnset brakes_;
+    Zones zones_;
+    ClosureTracker tracker_;
+
+    bool started_ = false;
+    std::int64_t time_ns_ = 0;
+    double accel_x_mps2_ = 0.0, accel_y_mps2_ = 0.0;
+    double accel_x_sum_ = 0.0, accel_x_count_ = 0.0;  // since the last drag measurement
+    double drive_force_n_ = 0.0, drive_force_before_n_ = 0.0;
+    bool have_accel_x_ = false;
+    double slip_force_n_ = 0.0;  // tyre force along x as the slip follows it
+    double speed_before_mps_ = 0.0, speed_time_s_ = 0.0;
+    double air_density_kgpm3_;
+    double temperature_k_ = 0.0, pressure_pa_ = 0.0, humidity_ = 0.0;
+    double pitot_ratio_ = 1.0;  // measured dynamic pressure over the one of the ground speed
+    bool have_pitot_ = false;
+    double course_rad_ = 0.0;  // clockwise from north; 0 where the heading is not logged
+    bool have_heading_ = false;
+    double lap_ = 0.0, lap_first_ = 0.0, lap_distance_m_;
+    bool have_lap_ = false;
+    double load_front_n_ = 0.0, load_rear_n_ = 0.0;
+    bool loads_known_ = false;
+    double missing_open_ = 0.0;  // base path while no closing is judged
+    double next_drift_s_ = 0.0;
+    std::uint64_t stale_ = 0;  // needed channels that are stale, bits as in Frame::present
+    Estimate estimate_;
+    FixedQueue<Closure, 16> closures_;
+    FixedQueue<Alarm, 64> alarms_;
 };
 
 }  // namespace holdfast::core

@@ -1,6 +1,7 @@
 // SPDX-License-Identifier: MIT
-// What the engine says: the estimate of now, a record for each closing of the flap, alarms, and the health of each
-// channel. Plain data of fixed size. Units are in the names; *_sd is a standard uncertainty in the same unit.
+// What the engine says: the estimate of now, a record for each closing of the flap, alarms, and the health of
+// each channel. Plain data of fixed size. Units are in the names; *_sd is a standard uncertainty in the same
+// unit.
 #pragma once
 
 #include <array>
@@ -27,74 +28,83 @@ enum EstimateFlag : std::uint32_t {
 struct Estimate {
     std::int64_t time_ns = 0;
     std::uint32_t flags = kNotConverged;
-    double speed_mps = 0.0;       // over ground, filtered
-    double air_speed_mps = 0.0;   // what the areas refer to; equals speed_mps under kGroundReference
+    double speed_mps = 0.0;      // over ground, filtered
+    double air_speed_mps = 0.0;  // what the areas refer to; equals speed_mps under kGroundReference
     double air_density_kgpm3 = 0.0;
     Quantity cla_front_m2;
     Quantity cla_rear_m2;
     Quantity cda_m2;
-    Quantity attached;            // share of the flap's downforce that is there, 0..1
+    Quantity attached;  // share of the flap's downforce that is there, 0..1
     Quantity downforce_front_n;
     Quantity downforce_rear_n;
     Quantity drag_n;
-    Quantity flap_area_m2;        // rear downforce area that the flap switches
+    Quantity flap_area_m2;  // rear downforce area that the flap switches
 };
 
 enum class Verdict : std::uint8_t { full, short_of, unclear };
 
 // One closing of the flap. "known" flags say which parts the data could tell; the rest is not to be printed.
 struct Closure {
-    std::uint32_t number = 0;     // 1, 2, ...
+    std::uint32_t number = 0;  // 1, 2, ...
     std::int32_t lap = 0;
-    std::int32_t zone = 0;        // 0: no braking followed
+    std::int32_t zone = 0;  // 0: no braking followed
     double time_command_s = 0.0;
     double time_closed_s = 0.0;
-    double speed_mps = 0.0;       // at the command
+    double speed_mps = 0.0;  // at the command
     double closing_time_s = 0.0;
     double lap_distance_brake_m = 0.0;  // NaN where there is no lap distance
-    bool reattachment_known = false;    // false: data were missing; tau, t95, plateau, probabilities mean nothing
+    bool reattachment_known =
+        false;  // false: data were missing; tau, t95, plateau, probabilities mean nothing
     Quantity tau_s;
-    double t95_s = 0.0;           // after time_closed, posterior median
-    double t95_low_s = 0.0;       // 95 % credible interval
+    double t95_s = 0.0;      // after time_closed, posterior median
+    double t95_low_s = 0.0;  // 95 % credible interval
     double t95_high_s = 0.0;
-    double plateau = 1.0;         // share of the flap's downforce that comes back at all
-    bool whole = true;            // false: settles short of whole; t95 and t95_high mean nothing
-    bool braked = false;          // brakes came within 3 s; the fields below need it
+    double plateau = 1.0;  // share of the flap's downforce that comes back at all
+    bool whole = true;     // false: settles short of whole; t95 and t95_high mean nothing
+    bool braked = false;   // brakes came within 3 s; the fields below need it
     double time_brake_s = 0.0;
-    Quantity margin_s;            // time_brake - (time_closed + t95)
-    Quantity shortfall_n;         // downforce missing at brake onset
-    double shortfall_share = 0.0; // over the rear downforce with attached flow
+    Quantity margin_s;             // time_brake - (time_closed + t95)
+    Quantity shortfall_n;          // downforce missing at brake onset
+    double shortfall_share = 0.0;  // over the rear downforce with attached flow
     double probability_short = 0.0;
     double probability_slow = 0.0;
-    bool usual_known = false;     // enough earlier closings to know the car's own usual
+    bool usual_known = false;  // enough earlier closings to know the car's own usual
     bool slow = false;
     Verdict verdict = Verdict::unclear;
     double flap_downforce_n = 0.0;  // the flap's downforce at time_closed
 };
 
 enum class AlarmKind : std::uint8_t {
-    short_at_brakes,      // probability_short over its limit at brake onset
-    unknown_at_brakes,    // the same could not be computed: never read as "fine"
-    slow_reattachment,    // a closing flagged slow or short of whole
-    data_stale,           // needed data stopped coming
-    sensor_distrusted,    // channel left out of the fusion
+    short_at_brakes,    // probability_short over its limit at brake onset
+    unknown_at_brakes,  // the same could not be computed: never read as "fine"
+    slow_reattachment,  // a closing flagged slow or short of whole
+    data_stale,         // needed data stopped coming
+    sensor_distrusted,  // channel left out of the fusion
 };
 
 struct Alarm {
     AlarmKind kind = AlarmKind::data_stale;
-    std::int64_t time_ns = 0;        // source time that it speaks of
-    std::uint32_t closure = 0;       // number of the closing, 0 where it is none's
+    std::int64_t time_ns = 0;          // source time that it speaks of
+    std::uint32_t closure = 0;         // number of the closing, 0 where it is none's
     Channel channel = Channel::speed;  // for sensor_distrusted and data_stale
-    double probability = 0.0;        // for short_at_brakes and slow_reattachment
-    Quantity shortfall_n;            // for short_at_brakes
+    double probability = 0.0;          // for short_at_brakes and slow_reattachment
+    Quantity shortfall_n;              // for short_at_brakes
 };
 
-enum class FusionResult : std::uint8_t { not_tried, used, gated, out_of_range, not_finite, repeated, distrusted };
+enum class FusionResult : std::uint8_t {
+    not_tried,
+    used,
+    gated,
+    out_of_range,
+    not_finite,
+    repeated,
+    distrusted
+};
 
 // Status record of one measurement: what came, what was expected, and what was done with it.
 struct MeasurementStatus {
     std::int64_t time_ns = 0;
-    double value = 0.0;       // SI
+    double value = 0.0;  // SI
     double predicted = 0.0;
     double innovation = 0.0;
     double innovation_variance = 0.0;
@@ -107,18 +117,18 @@ enum class Fault : std::uint8_t { none, gone, stuck, jumped, drifting, noisy, di
 
 struct ChannelHealth {
     std::uint64_t samples = 0;
-    std::uint64_t gaps = 0;          // pauses of more than three usual intervals
-    std::uint64_t repeats = 0;       // a sample with the time of the one before
+    std::uint64_t gaps = 0;     // pauses of more than three usual intervals
+    std::uint64_t repeats = 0;  // a sample with the time of the one before
     std::uint64_t not_finite = 0;
     std::uint64_t out_of_range = 0;
-    std::uint64_t gated = 0;         // refused by the innovation gate
-    double interval_s = 0.0;         // usual interval between samples
+    std::uint64_t gated = 0;  // refused by the innovation gate
+    double interval_s = 0.0;  // usual interval between samples
     std::int64_t last_time_ns = 0;
     double last_value = 0.0;
     Trust trust = Trust::absent;
     Fault fault = Fault::none;
-    std::int64_t since_ns = 0;       // source time since which trust holds
-    MeasurementStatus status;        // newest
+    std::int64_t since_ns = 0;  // source time since which trust holds
+    MeasurementStatus status;   // newest
 };
 
 using HealthTable = std::array<ChannelHealth, kChannelCount>;

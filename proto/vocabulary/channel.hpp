@@ -42,7 +42,9 @@ enum class Channel : std::uint8_t {
 
 inline constexpr std::size_t kChannelCount = static_cast<std::size_t>(Channel::count);
 
-[[nodiscard]] constexpr std::size_t index(Channel c) { return static_cast<std::size_t>(c); }
+[[nodiscard]] constexpr std::size_t index(Channel c) {
+    return static_cast<std::size_t>(c);
+}
 [[nodiscard]] constexpr Channel ride_height_channel(std::size_t slot) {
     return static_cast<Channel>(index(Channel::ride_height_0) + slot);
 }
@@ -87,7 +89,7 @@ inline constexpr ChannelInfo kRideHeightInfo{"ride_height", "m", -0.2, 1.0, "sen
 
 // Record of a channel; every ride-height slot shares kRideHeightInfo.
 [[nodiscard]] constexpr const ChannelInfo& info(Channel c) {
-    return is_ride_height(c) ? kRideHeightInfo : kChannelInfo[index(c)];
+    return index(c) < kChannelInfo.size() ? kChannelInfo[index(c)] : kRideHeightInfo;
 }
 
 }  // namespace holdfast

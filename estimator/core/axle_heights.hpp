@@ -1,0 +1,48 @@
+// SPDX-License-Identifier: MIT
+// The ride-height sensors of one axle as one height on the car's centre line: roll is taken out where two or
+// more sensors stand left and right of each other. Heights are against the static value, m, up positive.
+#pragma once
+
+#include <array>
+#include <cstdint>
+#include <optional>
+
+#include "estimator/core/car.hpp"
+#include "estimator/core/intake.hpp"
+#include "proto/vocabulary/frame.hpp"
+
+namespace holdfast::core {
+
+class AxleHeights {
+  public:
+    // Sensors of the car that belong to this axle: the nearer one.
+    AxleHeights(const Car& car, bool rear);
+
+    struct Height {
+        double dh_m = 0.0;
+        double noise_gain = 1.0;  // sum of squared weights: noise variance of dh over a single sensor's
+    };
+    // From the samples admitted in this frame; nothing where none came. roll_rad: left side up.
+    [[nodiscard]] std::optional<Height> take(const Frame& frame, std::uint64_t admitted, double roll_rad);
+
+    [[nodiscard]] bool can_tell_roll() const { return can_tell_roll_; }
+    [[nodiscard]] double roll_rad() const { return roll_rad_; }        // newest, where this axle can tell
+    [[nodiscard]] double smooth_dh_m() const { return smooth_dh_m_; }  // over about 10 ms, for the areas
+    [[nodiscard]] double x_m() const { return x_m_; }  // mean place, forward of the front axle line
+    [[nodiscard]] double noise_sd_m(const Intake& intake) const;  // of a single sensor
+    [[nodiscard]] std::size_t count() const { return count_; }
+    [[nodiscard]] const RideHeightSensor& sensor(std::size_t i) const { return sensor_[i]; }
+    void restart() { started_ = false; }
+
+  private:
+    std::array<RideHeightSensor, kMaxRideHeights> sensor_{};
+    std::size_t count_ = 0;
+    double x_m_ = 0.0;
+    bool can_tell_roll_ = false;
+    bool started_ = false;
+    double roll_rad_ = 0.0;
+    double smooth_dh_m_ = 0.0;
+    double smooth_time_s_ = 0.0;
+};
+
+}  // namespace holdfast::core

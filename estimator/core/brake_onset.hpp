@@ -1,0 +1,30 @@
+// SPDX-License-Identifier: MIT
+// When the brakes come on: from the brake pressure where it is logged, else from the longitudinal
+// acceleration.
+#pragma once
+
+#include <optional>
+
+namespace holdfast::core {
+
+class BrakeOnset {
+  public:
+    // Each returns the instant of onset once per braking, in s of source time.
+    [[nodiscard]] std::optional<double> pressure(double time_s, double pressure_pa);
+    // accel_without_brakes: what drag and rolling alone would give, m/s^2 (negative).
+    [[nodiscard]] std::optional<double> acceleration(double time_s, double accel_mps2,
+                                                     double accel_without_brakes_mps2);
+
+    [[nodiscard]] bool braking() const { return braking_; }
+
+  private:
+    bool braking_ = false;
+    bool have_pressure_ = false;
+    double rest_pa_ = 0.0;  // reading with the brakes off
+    double before_time_s_ = 0.0;
+    double before_pa_ = 0.0;
+    double smooth_mps2_ = 0.0;
+    double smooth_time_s_ = 0.0;
+};
+
+}  // namespace holdfast::core

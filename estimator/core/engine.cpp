@@ -1,0 +1,536 @@
+// SPDX-License-Identifier: MIT
+#include "estimator/core/engine.hpp"
+
+#include <algorithm>
+#include <cmath>
+#include <limits>
+
+#include "estimator/core/air.hpp"
+#include "estimator/core/measurements/accel_z.hpp"
+#include "estimator/core/measurements/ride_height.hpp"
+
+namespace holdfast::core {
+namespace {
+
+constexpr double kGravity = 9.80665;    // m/s^2
+constexpr double kGapRestart_s = 0.05;  // a pause that the motion of the car does not survive
+constexpr double kDriftEvery_s = 0.02;
+constexpr double kGate = 5.0;          // standard deviations of an innovation
+constexpr double kGateClosing = 12.0;  // while a bank runs: candidates far from the base path are to be heard
+constexpr double kOpeningLag_chords =
+    5.0;  // flow leaves the opening flap so fast; common practice, no source
+constexpr double kTransferMemory_s = 0.1;
+constexpr double kTransferUnsure = 0.03;
+constexpr double kPitotSmoothing_s = 0.05;
+constexpr double kWindSd_mps = 2.0;   // wind that areas carry where air speed is not measured
+constexpr double kLoadGainSd = 0.01;  // a load sensor's gain against the weight it was zeroed with
+constexpr double kSlipLag_s =
+    0.06;  // common practice, no source: tyre relaxation length over speed, wheel inertia
+constexpr double kSlipUnsure = 0.010;  // relative speed error for a force of one weight not yet followed
+constexpr double kDragGate = 4.0;
+constexpr double kDragFrom_mps = 30.0;  // below, drag drowns in the other forces
+constexpr double kSlowFrom_mps = 20.0;
+constexpr double kStraight_mps2 = 3.0;  // lateral acceleration beyond which tyres drag too much
+
+double square(double v) {
+    return v * v;
+}
+bool has(std::uint64_t admitted, Channel c) {
+    return ((admitted >> index(c)) & 1U) != 0;
+}
+
+}  // namespace
+
+Engine::Engine(const Car& car, const Settings& settings)
+    : car_(car),
+      settings_(settings),
+      longitudinal_(car),
+      chassis_(car),
+      front_heights_(car, false),
+      rear_heights_(car, true),
+      tracker_(settings),
+      air_density_kgpm3_(kStandardAirDensity_kgpm3),
+      lap_distance_m_(std::numeric_limits<double>::quiet_NaN()) {}
+
+double Engine::mass_kg() const {
+    return car_.mass_kg.value - car_.fuel_per_lap_kg.value * std::max(lap_ - lap_first_, 0.0);
+}
+
+double Engine::dynamic_pressure_pa() const {
+    return measured_pressure_pa() * chassis_.wind_factor();
+}
+
+// Before the wind state: from the pitot where there is one, else from the speed over ground.
+double Engine::measured_pressure_pa() const {
+    return 0.5 * air_density_kgpm3_ * square(longitudinal_.speed_mps()) * pitot_ratio_;
+}
+
+// Net force of the tyres along x: what accelerates the car and what the air takes.
+double Engine::tyre_force_x_n() const {
+    return mass_kg() * accel_x_mps2_ + dynamic_pressure_pa() * longitudinal_.filter().x[kDragArea];
+}
+
+StepResult Engine::step(const Frame& frame) {
+    if (started_ && frame.time_ns <= time_ns_) {
+        intake_.count_repeats(frame);
+        return frame.time_ns == time_ns_ ? StepResult::repeated : StepResult::out_of_order;
+    }
+    const double dt_s = started_ ? static_cast<double>(frame.time_ns - time_ns_) * 1e-9 : 0.0;
+    time_ns_ = frame.time_ns;
+    const std::uint64_t admitted = intake_.admit(frame);
+    const double time_s = frame.time_s();
+    note_slow_channels(frame, admitted);
+    if (!started_) {
+        started_ = true;
+        next_drift_s_ = time_s + kDriftEvery_s;
+        if (has(admitted, Channel::speed)) longitudinal_.restart(frame.get(Channel::speed));
+    } else if (dt_s > kGapRestart_s) {
+        restart_motion(time_s);
+    }
+    const double step_s = std::min(dt_s, kGapRestart_s);
+    step_longitudinal(frame, admitted, step_s);
+    if (has(admitted, Channel::heading)) {
+        course_rad_ = frame.get(Channel::heading);
+        have_heading_ = true;
+    }
+    find_brakes(frame, admitted);
+    step_flap(frame, admitted);
+    step_chassis(frame, admitted, step_s);
+    tracker_.tick(aero_now(time_s), std::max(front_road_.colour(), rear_road_.colour()), chassis_.filter());
+    watch_needed(frame.time_ns);
+    collect();
+    return StepResult::done;
+}
+
+void Engine::note_slow_channels(const Frame& frame, std::uint64_t admitted) {
+    if (has(admitted, Channel::accel_y)) accel_y_mps2_ = frame.get(Channel::accel_y);
+    if (has(admitted, Channel::lap)) {
+        if (!have_lap_) lap_first_ = frame.get(Channel::lap);
+        have_lap_ = true;
+        lap_ = frame.get(Channel::lap);
+    }
+    if (has(admitted, Channel::lap_distance)) lap_distance_m_ = frame.get(Channel::lap_distance);
+    bool air_changed = false;
+    const auto air = [&](Channel c, double& value) {
+        if (!has(admitted, c)) return;
+        value = frame.get(c);
+        air_changed = true;
+    };
+    air(Channel::air_temperature, temperature_k_);
+    air(Channel::air_pressure, pressure_pa_);
+    air(Channel::relative_humidity, humidity_);
+    if (air_changed && temperature_k_ > 0.0 && pressure_pa_ > 0.0) {
+        air_density_kgpm3_ = moist_air_density(temperature_k_, pressure_pa_, humidity_);
+    }
+}
+
+void Engine::step_longitudinal(const Frame& frame, std::uint64_t admitted, double dt_s) {
+    const double time_s = frame.time_s();
+    if (has(admitted, Channel::accel_x)) {
+        have_accel_x_ = true;
+        accel_x_mps2_ = frame.get(Channel::accel_x);
+        accel_x_sum_ += accel_x_mps2_ - longitudinal_.accel_offset_mps2();
+        accel_x_count_ += 1.0;
+    }
+    const double accel_noise = intake_.noise_sd(Channel::accel_x);
+    const double density = have_accel_x_
+                               ? square(std::max(accel_noise, 0.05)) *
+                                     std::max(intake_.health()[index(Channel::accel_x)].interval_s, 1e-3)
+                               : 4.0;
+    longitudinal_.predict(dt_s, accel_x_mps2_, density + 1e-4);
+    if (has(admitted, Channel::speed)) {
+        const double measured = frame.get(Channel::speed);
+        // Slip follows the tyre force with the wheels' and the tyres' lag: while the force changes it is
+        // unsure.
+        const double weight_n = mass_kg() * kGravity;
+        const double since_s = std::max(intake_.health()[index(Channel::speed)].interval_s, 1e-3);
+        slip_force_n_ += std::min(since_s / kSlipLag_s, 1.0) * (tyre_force_x_n() - slip_force_n_);
+        const double unsure = kSlipUnsure * measured * std::abs(tyre_force_x_n() - slip_force_n_) / weight_n;
+        const double noise = std::hypot(std::max(intake_.noise_sd(Channel::speed), 0.02), 0.03, unsure);
+        const auto innovation = longitudinal_.update_speed(measured, slip_force_n_, weight_n, noise, 8.0);
+        MeasurementStatus& status = intake_.health()[index(Channel::speed)].status;
+        status.predicted = measured - innovation.value;
+        status.innovation = innovation.value;
+        status.innovation_variance = innovation.variance;
+        status.test_ratio = square(innovation.value) / (64.0 * innovation.variance);
+        status.result = status.test_ratio <= 1.0 ? FusionResult::used : FusionResult::gated;
+        if (status.result == FusionResult::gated) ++intake_.health()[index(Channel::speed)].gated;
+        if (!have_accel_x_) {  // the derivative stands in for the accelerometer
+            const double since = time_s - speed_time_s_;
+            if (speed_time_s_ > 0.0 && since > 0.0 && since < 0.2) {
+                accel_x_mps2_ +=
+                    std::min(since / 0.05, 1.0) * ((measured - speed_before_mps_) / since - accel_x_mps2_);
+            }
+            speed_before_mps_ = measured;
+            speed_time_s_ = time_s;
+        }
+    }
+    if (has(admitted, Channel::pitot_pressure)) {
+        const double ground = 0.5 * air_density_kgpm3_ * square(longitudinal_.speed_mps());
+        if (longitudinal_.speed_mps() > 15.0) {
+            const double ratio = frame.get(Channel::pitot_pressure) / ground;
+            const double interval =
+                std::max(intake_.health()[index(Channel::pitot_pressure)].interval_s, 1e-3);
+            const double share = have_pitot_ ? std::min(interval / kPitotSmoothing_s, 1.0) : 1.0;
+            if (!have_pitot_) chassis_.wind_is_measured();
+            pitot_ratio_ = std::clamp(pitot_ratio_ + share * (ratio - pitot_ratio_), 0.5, 2.0);
+            have_pitot_ = true;
+        } else {
+            pitot_ratio_ = 1.0;
+        }
+    }
+    if (has(admitted, Channel::drive_force)) {
+        drive_force_before_n_ = drive_force_n_;
+        drive_force_n_ = frame.get(Channel::drive_force);
+        const bool steady = std::abs(drive_force_n_ - drive_force_before_n_) < 0.03 * mass_kg() * kGravity;
+        if (steady && !brakes_.braking() && accel_x_count_ > 0.0 && have_accel_x_ &&
+            longitudinal_.speed_mps() > kDragFrom_mps && std::abs(accel_y_mps2_) < kStraight_mps2 &&
+            !tracker_.bank().running()) {
+            LongitudinalFilter::DragInput in;
+            in.drive_force_n = drive_force_n_;
+            in.accel_x_mps2 = accel_x_sum_ / accel_x_count_ + longitudinal_.accel_offset_mps2();
+            in.dynamic_pressure_pa = dynamic_pressure_pa();
+            in.dh_front_m = front_heights_.smooth_dh_m();
+            in.dh_rear_m = rear_heights_.smooth_dh_m();
+            in.missing = missing_open_ * chassis_.height_factor_rear(in.dh_rear_m);
+            in.downforce_n =
+                in.dynamic_pressure_pa * (chassis_.filter().x[kAreaFront] + chassis_.filter().x[kAreaRear]);
+            in.mass_kg = mass_kg();
+            const double accel_sd = std::max(accel_noise, 0.05) / std::sqrt(accel_x_count_);
+            in.noise_sd_n = std::hypot(in.mass_kg * accel_sd, std::max(0.10 * in.mass_kg * kGravity, 1.0));
+            (void)longitudinal_.update_drag(in, kDragGate);
+        }
+        accel_x_sum_ = accel_x_count_ = 0.0;
+    }
+}
+
+void Engine::find_brakes(const Frame& frame, std::uint64_t admitted) {
+    const double time_s = frame.time_s();
+    std::optional<double> onset;
+    if (has(admitted, Channel::brake_pressure))
+        onset = brakes_.pressure(time_s, frame.get(Channel::brake_pressure));
+    if (!onset && has(admitted, Channel::accel_x)) {
+        const double drag = dynamic_pressure_pa() * longitudinal_.filter().x[kDragArea];
+        onset = brakes_.acceleration(time_s, accel_x_mps2_, -drag / mass_kg());
+    }
+    if (!onset) return;
+    const double distance = lap_distance_m_ - (time_s - *onset) * longitudinal_.speed_mps();
+    const std::int32_t zone =
+        longitudinal_.speed_mps() > kSlowFrom_mps ? zones_.at(distance) : Zones::kUnknown;
+    tracker_.brakes(*onset, zone, distance, aero_now(time_s), chassis_.filter());
+}
+
+void Engine::step_flap(const Frame& frame, std::uint64_t admitted) {
+    const double time_s = frame.time_s();
+    if (has(admitted, Channel::flap_command)) flap_.command(time_s, frame.get(Channel::flap_command));
+    if (!has(admitted, Channel::flap_position)) return;
+    const FlapMotion::Step step = flap_.position(time_s, frame.get(Channel::flap_position));
+    const double colour = std::max(front_road_.colour(), rear_road_.colour());
+    if (step.closing_began) {
+        tracker_.end(aero_now(time_s), colour, chassis_.filter(), false);
+        tracker_.begin(aero_now(time_s), flap_.time_command_s(), car_.flap_chord_m, chassis_.filter());
+    }
+    if (step.shut) tracker_.shut(flap_.time_moved_s(), flap_.time_shut_s());
+    if (step.reopened || (flap_.phase() == FlapPhase::opening && tracker_.bank().running())) {
+        tracker_.end(aero_now(time_s), colour, chassis_.filter(), false);
+    }
+    if (flap_.phase() == FlapPhase::opening) tracker_.forget_residual();
+}
+
+void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_s) {
+    const double time_s = frame.time_s();
+    const AxleLoads::Load front = front_loads_.take(frame, admitted, intake_, accel_y_mps2_);
+    const AxleLoads::Load rear = rear_loads_.take(frame, admitted, intake_, accel_y_mps2_);
+    const bool first = !loads_known_;
+    loads_known_ = front.known && rear.known;
+    ReattachmentBank& bank = tracker_.bank();
+
+    ChassisInput in;
+    in.dt_s = dt_s;
+    in.load_front_n = first ? front.sum_n : 0.5 * (load_front_n_ + front.sum_n);
+    in.load_rear_n = first ? rear.sum_n : 0.5 * (load_rear_n_ + rear.sum_n);
+    load_front_n_ = front.sum_n;
+    load_rear_n_ = rear.sum_n;
+    const double accel_density =
+        square(chassis_.constants().transfer_per_accel_kg * intake_.noise_sd(Channel::accel_x)) *
+        intake_.health()[index(Channel::accel_x)].interval_s;
+    in.load_noise_front_n2s = front.noise_density_n2s + accel_density;
+    in.load_noise_rear_n2s = rear.noise_density_n2s + accel_density;
+    // Links, tyres and pitch do not carry the longitudinal transfer quite as modelled: an error that keeps
+    // its sign for a while, in proportion to the transfer.
+    const double transfer_n = chassis_.constants().transfer_per_accel_kg * accel_x_mps2_;
+    const double transfer_density = 2.0 * kTransferMemory_s * square(kTransferUnsure * transfer_n);
+    in.load_noise_front_n2s += transfer_density;
+    in.load_noise_rear_n2s += transfer_density;
+    in.dynamic_pressure_pa = measured_pressure_pa();
+    in.speed_mps = longitudinal_.speed_mps();
+    in.course_rad = course_rad_;
+    in.air_speed_measured = have_pitot_;
+    in.dh_front_m = front_heights_.smooth_dh_m();
+    in.dh_rear_m = rear_heights_.smooth_dh_m();
+    in.accel_x_mps2 = accel_x_mps2_ - longitudinal_.accel_offset_mps2();
+    in.tyre_force_x_n = tyre_force_x_n();
+    in.fuel_burnt_kg = car_.mass_kg.value - mass_kg();
+    in.road_front_m2ps = front_road_.density_m2ps(longitudinal_.speed_mps());
+    in.road_rear_m2ps = rear_road_.density_m2ps(longitudinal_.speed_mps());
+    if (bank.running()) {
+        in.missing = bank.advance(time_s - 0.5 * dt_s, dt_s, flap_.position_now());
+        missing_open_ = 1.0;
+    } else {
+        const double target = flap_.phase() == FlapPhase::closed ? tracker_.residual_share()
+                                                                 : std::clamp(flap_.position_now(), 0.0, 1.0);
+        const double lag_s =
+            kOpeningLag_chords * car_.flap_chord_m / std::max(longitudinal_.speed_mps(), 10.0);
+        if (flap_.phase() == FlapPhase::closed) {
+            missing_open_ = target;
+        } else {
+            const double before = missing_open_;
+            missing_open_ += (1.0 - std::exp(-dt_s / lag_s)) * (target - missing_open_);
+            // How the flow leaves is not modelled beyond this lag: half the change is taken as uncertain
+            // force.
+            const double unsure = 0.5 * std::abs(missing_open_ - before) * in.dynamic_pressure_pa *
+                                  chassis_.filter().x[kFlapAreaRear];
+            if (dt_s > 0.0) in.load_noise_rear_n2s += square(unsure) * 0.02 / std::max(dt_s, 1e-3) * 4.0;
+        }
+        in.missing = missing_open_;
+    }
+    chassis_.predict(in);
+    if (bank.running()) bank.propagate(chassis_.last_step());
+    if (time_s >= next_drift_s_) {
+        const double elapsed = kDriftEvery_s + std::min(time_s - next_drift_s_, kGapRestart_s);
+        next_drift_s_ = time_s + kDriftEvery_s;
+        const double turn_radps = std::abs(accel_y_mps2_) / std::max(longitudinal_.speed_mps(), 10.0);
+        chassis_.drift(elapsed, have_pitot_, have_heading_ ? 0.0 : turn_radps);
+        longitudinal_.drift(elapsed, 0.002);
+    }
+    const double roll = rear_heights_.can_tell_roll() ? rear_heights_.roll_rad() : front_heights_.roll_rad();
+    fuse_height(front_heights_, front_road_, kRoadFront, frame, admitted, roll);
+    fuse_height(rear_heights_, rear_road_, kRoadRear, frame, admitted, roll);
+    if (has(admitted, Channel::accel_z)) fuse_accel_z(time_s, frame.get(Channel::accel_z));
+}
+
+void Engine::fuse_height(AxleHeights& heights, RoadTuning& tuning, ChassisState road, const Frame& frame,
+                         std::uint64_t admitted, double roll_rad) {
+    const auto height = heights.take(frame, admitted, roll_rad);
+    if (!height) return;
+    auto& filter = chassis_.filter();
+    const RideHeightModel model{heights.x_m() + chassis_.constants().cg_to_front_m, road};
+    const auto h = model.J_height_state();
+    const double noise = square(heights.noise_sd_m(intake_)) * height->noise_gain * tuning.noise_factor();
+    Innovation<double> innovation{height->dh_m - model.predict(filter.x), 0.0};
+    innovation.variance = filter.expect(h, noise);
+    const bool closing = tracker_.bank().running();
+    const double gate = closing ? kGateClosing : kGate;
+    const double ratio = square(innovation.value) / (square(gate) * innovation.variance);
+    const bool use = ratio <= 1.0;
+    for (std::size_t i = 0; i < heights.count(); ++i) {
+        const std::size_t slot = index(heights.sensor(i).channel);
+        if (((admitted >> slot) & 1U) == 0) continue;
+        ChannelHealth& health = intake_.health()[slot];
+        health.status.predicted = health.status.value - innovation.value;
+        health.status.innovation = innovation.value;
+        health.status.innovation_variance = innovation.variance;
+        health.status.test_ratio = ratio;
+        health.status.result = use ? FusionResult::used : FusionResult::gated;
+        if (!use) ++health.gated;
+    }
+    if (!use) {
+        // The road may have jumped (a kerb): its uncertainty grows until the heights are heard again.
+        filter.add_noise(road, square(0.002));
+        return;
+    }
+    const double flap_reaction = closing ? [&] {
+        double sum = 0.0;
+        for (std::size_t i = 0; i < kFlapAreaRear; ++i) sum += h[i] * filter.column(kFlapAreaRear)[i];
+        return sum;
+    }() : 0.0;
+    filter.apply(innovation.value);
+    if (closing) {
+        tracker_.bank().weigh(h, filter.gain(), innovation, flap_reaction, 0.0);
+    } else if (longitudinal_.speed_mps() > 10.0) {
+        const double interval = std::max(intake_.health()[index(heights.sensor(0).channel)].interval_s, 1e-4);
+        tuning.learn(innovation.value, innovation.variance, interval);
+    }
+}
+
+void Engine::fuse_accel_z(double time_s, double measured_mps2) {
+    (void)time_s;
+    auto& filter = chassis_.filter();
+    const ChassisStep& step = chassis_.last_step();
+    const auto h = AccelZModel::J_accel_state(step);
+    const double sd = std::max(intake_.noise_sd(Channel::accel_z), 0.05);
+    Innovation<double> innovation{measured_mps2 - AccelZModel::predict(step), 0.0};
+    innovation.variance = filter.expect(h, square(sd) + square(0.1));
+    const bool closing = tracker_.bank().running();
+    const double gate = closing ? kGateClosing : kGate;
+    ChannelHealth& health = intake_.health()[index(Channel::accel_z)];
+    health.status.predicted = measured_mps2 - innovation.value;
+    health.status.innovation = innovation.value;
+    health.status.innovation_variance = innovation.variance;
+    health.status.test_ratio = square(innovation.value) / (square(gate) * innovation.variance);
+    const bool use = health.status.test_ratio <= 1.0;
+    health.status.result = use ? FusionResult::used : FusionResult::gated;
+    if (!use) {
+        ++health.gated;
+        return;
+    }
+    double flap_reaction = 0.0;
+    if (closing) {
+        for (std::size_t i = 0; i < kFlapAreaRear; ++i)
+            flap_reaction += h[i] * filter.column(kFlapAreaRear)[i];
+        flap_reaction += h[kFlapAreaRear];
+    }
+    filter.apply(innovation.value);
+    if (closing) {
+        tracker_.bank().weigh(h, filter.gain(), innovation, flap_reaction, step.heave_accel_per_missing_area);
+    }
+}
+
+void Engine::restart_motion(double time_s) {
+    const double colour = std::max(front_road_.colour(), rear_road_.colour());
+    tracker_.end(aero_now(time_s), colour, chassis_.filter(), true);
+    chassis_.restart_motion(front_heights_.smooth_dh_m(), rear_heights_.smooth_dh_m(), front_heights_.x_m(),
+                            rear_heights_.x_m());
+    front_heights_.restart();
+    rear_heights_.restart();
+    front_road_.restart();
+    rear_road_.restart();
+    loads_known_ = false;
+}
+
+bool Engine::converged() const {
+    const auto& f = chassis_.filter();
+    return f.variance(kAreaFront) < square(0.25) && f.variance(kAreaRear) < square(0.25);
+}
+
+AeroNow Engine::aero_now(double time_s) const {
+    const auto& x = chassis_.filter().x;
+    const double dh_rear = rear_heights_.smooth_dh_m();
+    AeroNow now;
+    now.time_s = time_s;
+    now.speed_mps = longitudinal_.speed_mps();
+    now.dynamic_pressure_pa = dynamic_pressure_pa();
+    now.factor_rear = chassis_.height_factor_rear(dh_rear);
+    now.factor_front = chassis_.height_factor_front(front_heights_.smooth_dh_m()) * x[kFlapAreaFront] /
+                       std::max(x[kFlapAreaRear], 0.1);
+    now.rear_area_attached_m2 = x[kAreaRear] + x[kSlopeRear] * dh_rear;
+    now.rear_area_sd_m2 = std::sqrt(chassis_.filter().variance(kAreaRear));
+    now.lap = static_cast<std::int32_t>(std::lround(lap_));
+    now.reliable = loads_known_ && stale_ == 0 && converged();
+    return now;
+}
+
+void Engine::watch_needed(std::int64_t time_ns) {
+    constexpr std::array<Channel, 6> kNeeded{Channel::speed,   Channel::load_fl, Channel::load_fr,
+                                             Channel::load_rl, Channel::load_rr, Channel::flap_position};
+    const auto watch = [&](Channel c) {
+        const std::uint64_t bit = std::uint64_t{1} << index(c);
+        const bool stale =
+            intake_.health()[index(c)].samples > 0 && intake_.age_s(c, time_ns) > settings_.stale_s;
+        if (stale && (stale_ & bit) == 0) {
+            alarms_.push(Alarm{AlarmKind::data_stale, time_ns, 0, c, 1.0, {}});
+            ChannelHealth& health = intake_.health()[index(c)];
+            health.fault = Fault::gone;
+            health.since_ns = health.last_time_ns;
+        }
+        stale_ = stale ? stale_ | bit : stale_ & ~bit;
+    };
+    for (const Channel c : kNeeded) watch(c);
+}
+
+void Engine::collect() {
+    while (const auto alarm = tracker_.take_alarm()) alarms_.push(*alarm);
+    while (const auto closure = tracker_.take_closure()) closures_.push(*closure);
+}
+
+void Engine::finish() {
+    const double colour = std::max(front_road_.colour(), rear_road_.colour());
+    tracker_.end(aero_now(static_cast<double>(time_ns_) * 1e-9), colour, chassis_.filter(), false);
+    collect();
+}
+
+const Estimate& Engine::estimate() {
+    const auto& filter = chassis_.filter();
+    const auto& x = filter.x;
+    const bool closing = tracker_.bank().running();
+    const double q = std::max(measured_pressure_pa(), 1e-3);
+    const double wind_factor = chassis_.wind_factor();
+    const double dh_front = front_heights_.smooth_dh_m();
+    const double dh_rear = rear_heights_.smooth_dh_m();
+    const double factor_front = chassis_.height_factor_front(dh_front);
+    const double factor_rear = chassis_.height_factor_rear(dh_rear);
+
+    Estimate& e = estimate_;
+    e.time_ns = time_ns_;
+    e.speed_mps = longitudinal_.speed_mps();
+    e.air_speed_mps = e.speed_mps * std::sqrt(pitot_ratio_);
+    e.air_density_kgpm3 = air_density_kgpm3_;
+    e.flap_area_m2 = {x[kFlapAreaRear], std::sqrt(closing ? tracker_.bank().flap_prior_variance()
+                                                          : filter.variance(kFlapAreaRear))};
+    MissingNow missing;
+    if (closing) {
+        missing = tracker_.missing();
+    } else {
+        missing.share = missing_open_;
+        missing.area_m2 = missing_open_ * x[kFlapAreaRear];
+    }
+    const double front_ratio = x[kFlapAreaFront] / std::max(x[kFlapAreaRear], 0.1);
+
+    // Areas now as linear forms of the states; the bank's mixture moves them from the base path.
+    ChassisFilter::Filter::Vector front{}, rear{};
+    front[kAreaFront] = 1.0;
+    front[kSlopeFront] = dh_front;
+    rear[kAreaRear] = 1.0;
+    rear[kSlopeRear] = dh_rear;
+    double area_front = x[kAreaFront] + x[kSlopeFront] * dh_front;
+    double area_rear = x[kAreaRear] + x[kSlopeRear] * dh_rear;
+    if (closing) {
+        area_front += tracker_.mean_deviation(kAreaFront, filter) +
+                      tracker_.mean_deviation(kSlopeFront, filter) * dh_front;
+        area_rear += tracker_.mean_deviation(kAreaRear, filter) +
+                     tracker_.mean_deviation(kSlopeRear, filter) * dh_rear;
+        area_front -= factor_front * front_ratio * missing.area_m2;
+        area_rear -= factor_rear * missing.area_m2;
+    } else {
+        front[kFlapAreaFront] = -factor_front * missing_open_;
+        rear[kFlapAreaRear] = -factor_rear * missing_open_;
+        area_front += front[kFlapAreaFront] * x[kFlapAreaFront];
+        area_rear += rear[kFlapAreaRear] * x[kFlapAreaRear];
+    }
+    // In the reference that is measured: wind, where it is not, stays in the areas.
+    area_front *= wind_factor;
+    area_rear *= wind_factor;
+    // Wind where the air speed is not measured, and the gain of the load sensors, move an area as a whole.
+    const double wind = have_pitot_ ? 0.0 : 2.0 * kWindSd_mps / std::max(e.speed_mps, 5.0);
+    const double whole = std::hypot(wind, kLoadGainSd);
+    const auto sd_of = [&](const ChassisFilter::Filter::Vector& form, double area, double missing_sd) {
+        return std::sqrt(filter.variance_of(form) + square(whole * area) + square(missing_sd));
+    };
+    e.cla_front_m2 = {area_front, sd_of(front, area_front, factor_front * front_ratio * missing.area_sd_m2)};
+    e.cla_rear_m2 = {area_rear, sd_of(rear, area_rear, factor_rear * missing.area_sd_m2)};
+    e.cda_m2 = longitudinal_.drag_area(dh_front, dh_rear, factor_rear * missing.share, missing.share_sd, q,
+                                       mass_kg() * kGravity + q * (area_front + area_rear));
+    e.cda_m2.value *= wind_factor;
+    e.cda_m2.sd = std::hypot(e.cda_m2.sd, wind * e.cda_m2.value);
+    e.attached = {std::clamp(1.0 - missing.share, 0.0, 1.0), missing.share_sd};
+    e.downforce_front_n = {q * area_front, q * e.cla_front_m2.sd};
+    e.downforce_rear_n = {q * area_rear, q * e.cla_rear_m2.sd};
+    e.drag_n = {q * e.cda_m2.value, q * e.cda_m2.sd};
+
+    std::uint32_t flags = 0;
+    if (!converged()) flags |= kNotConverged;
+    if (stale_ != 0) flags |= kStale;
+    if (!have_pitot_) flags |= kGroundReference;
+    if (temperature_k_ == 0.0) flags |= kStandardAir;
+    if (intake_.health()[index(Channel::drive_force)].samples == 0) flags |= kDragByCoasting;
+    if (e.speed_mps < kSlowFrom_mps) flags |= kSlow;
+    if (flap_.phase() != FlapPhase::closed) flags |= kFlapOpen;
+    if (closing) flags |= kReattaching;
+    for (const ChannelHealth& h : intake_.health()) {
+        if (h.trust == Trust::distrusted) flags |= kSensorDistrusted;
+    }
+    e.flags = flags;
+    return e;
+}
+
+}  // namespace holdfast::core

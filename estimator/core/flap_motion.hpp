@@ -1,0 +1,48 @@
+// SPDX-License-Identifier: MIT
+// Where the flap is in its cycle, from the position and, where logged, the command: when a closing was asked
+// for, when the flap began to move, when it was shut.
+#pragma once
+
+#include <cstdint>
+
+namespace holdfast::core {
+
+enum class FlapPhase : std::uint8_t { closed, opening, open, closing };
+
+class FlapMotion {
+  public:
+    struct Step {
+        bool closing_began = false;  // a closing begins: command, or first movement where there is no command
+        bool shut = false;           // the flap is fully closed again
+        bool reopened = false;       // a closing was given up before the flap was shut
+    };
+    void command(double time_s, double value);
+    [[nodiscard]] Step position(double time_s, double value);
+
+    [[nodiscard]] FlapPhase phase() const { return phase_; }
+    [[nodiscard]] double position_now() const { return position_; }
+    [[nodiscard]] double time_command_s() const { return time_command_s_; }  // of the newest closing
+    [[nodiscard]] double time_moved_s() const { return time_moved_s_; }
+    [[nodiscard]] double time_shut_s() const { return time_shut_s_; }
+
+  private:
+    void track_fall(double time_s, double value);
+
+    FlapPhase phase_ = FlapPhase::closed;
+    bool have_command_ = false;
+    bool command_fell_ = false;
+    double commanded_ = 0.0;
+    double position_ = 0.0;
+    double open_level_ = 1.0;
+    double last_open_time_s_ = 0.0;  // last instant at which the flap stood at its open level
+    double time_command_s_ = 0.0;
+    double time_moved_s_ = 0.0;
+    double time_shut_s_ = 0.0;
+    double before_time_s_ = 0.0;
+    double before_position_ = 0.0;
+    // The lower part of the fall, for the straight line that finds the end of travel.
+    double line_n_ = 0.0, line_t_ = 0.0, line_p_ = 0.0, line_tt_ = 0.0, line_tp_ = 0.0;
+    double line_origin_s_ = 0.0;
+};
+
+}  // namespace holdfast::core

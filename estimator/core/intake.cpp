@@ -1,0 +1,117 @@
+// SPDX-License-Identifier: MIT
+#include "estimator/core/intake.hpp"
+
+#include <algorithm>
+#include <cmath>
+#include <limits>
+
+namespace holdfast::core {
+namespace {
+
+constexpr double kGapIntervals = 3.0;        // a pause of more usual intervals than this is a gap
+constexpr double kStuckAfter_s = 0.1;        // a lively channel that shows one value for longer is stuck
+constexpr std::uint64_t kStuckSamples = 12;  // and for at least so many samples
+constexpr double kLivelyShare = 0.8;         // changes from sample to sample on so many samples: lively
+constexpr std::uint64_t kMovingAgain = 40;   // changing samples after which a stuck channel is believed again
+constexpr double kSqrtSix = 2.449489742783178;  // sd of a second difference of white noise of sd 1
+
+}  // namespace
+
+double Intake::age_s(Channel c, std::int64_t now_ns) const {
+    const ChannelHealth& h = health_[index(c)];
+    if (h.samples == 0) return std::numeric_limits<double>::infinity();
+    return static_cast<double>(now_ns - h.last_time_ns) * 1e-9;
+}
+
+void Intake::count_repeats(const Frame& frame) {
+    for (std::size_t i = 0; i < kChannelCount; ++i) {
+        if (frame.has(static_cast<Channel>(i))) ++health_[i].repeats;
+    }
+}
+
+std::uint64_t Intake::admit(const Frame& frame) {
+    std::uint64_t admitted = 0;
+    for (std::uint64_t rest = frame.present; rest != 0; rest &= rest - 1) {
+        const auto i = static_cast<std::size_t>(__builtin_ctzll(rest));
+        if (admit(static_cast<Channel>(i), frame.time_ns, frame.value[i])) admitted |= std::uint64_t{1} << i;
+    }
+    return admitted;
+}
+
+bool Intake::admit(Channel c, std::int64_t time_ns, double value) {
+    ChannelHealth& h = health_[index(c)];
+    h.status.time_ns = time_ns;
+    h.status.value = value;
+    if (!std::isfinite(value)) {
+        ++h.not_finite;
+        h.status.result = FusionResult::not_finite;
+        return false;
+    }
+    if (value < info(c).least || value > info(c).most) {
+        ++h.out_of_range;
+        h.status.result = FusionResult::out_of_range;
+        return false;
+    }
+    learn(learned_[index(c)], h, time_ns, value);
+    h.status.result = h.trust == Trust::distrusted ? FusionResult::distrusted : FusionResult::not_tried;
+    return h.trust == Trust::good;
+}
+
+void Intake::learn(Learned& l, ChannelHealth& h, std::int64_t time_ns, double value) {
+    const bool first = h.samples == 0;
+    const double since_s = static_cast<double>(time_ns - h.last_time_ns) * 1e-9;
+    if (first) {
+        h.trust = Trust::good;
+        h.since_ns = time_ns;
+    } else if (h.samples > 8 && since_s > kGapIntervals * h.interval_s) {
+        ++h.gaps;
+        l.in_a_row = 0;
+    } else {
+        h.interval_s +=
+            (since_s - h.interval_s) * (h.samples < 20 ? 1.0 / static_cast<double>(h.samples) : 0.05);
+    }
+    const bool moved = first || value != h.last_value;
+    if (!first)
+        l.moving_share += ((moved ? 1.0 : 0.0) - l.moving_share) * (h.trust == Trust::good ? 0.01 : 0.0);
+    if (moved) {
+        l.same_in_a_row = 0;
+        l.same_since_ns = time_ns;
+        ++l.moving_again;
+    } else {
+        ++l.same_in_a_row;
+        l.moving_again = 0;
+    }
+    // The share above decays while the channel is stuck, so it is compared before the run began to weigh on
+    // it.
+    const double lively_before =
+        l.moving_share / std::pow(0.99, static_cast<double>(std::min<std::uint64_t>(l.same_in_a_row, 100)));
+    const bool stuck = l.same_in_a_row >= kStuckSamples && lively_before > kLivelyShare &&
+                       static_cast<double>(time_ns - l.same_since_ns) * 1e-9 > kStuckAfter_s;
+    if (h.trust == Trust::good && stuck) {
+        h.trust = Trust::distrusted;
+        h.fault = Fault::stuck;
+        h.since_ns = l.same_since_ns;
+    } else if (h.trust == Trust::distrusted && h.fault == Fault::stuck && l.moving_again >= kMovingAgain) {
+        h.trust = Trust::good;
+        h.fault = Fault::none;
+        h.since_ns = time_ns;
+    }
+    if (l.in_a_row >= 2) {
+        const double second = std::abs(value - 2.0 * h.last_value + l.before) / kSqrtSix;
+        // A median tracker: robust against movement and spikes, |N(0,1)| has its median at 0.6745.
+        const double step = l.in_a_row < 500 ? 0.05 : 0.005;
+        const double target = 0.6745 * l.noise_sd;
+        if (l.noise_sd == 0.0) {
+            l.noise_sd = second;
+        } else {
+            l.noise_sd *= second > target ? 1.0 + step : 1.0 - step;
+        }
+    }
+    l.before = h.last_value;
+    ++l.in_a_row;
+    ++h.samples;
+    h.last_time_ns = time_ns;
+    h.last_value = value;
+}
+
+}  // namespace holdfast::core

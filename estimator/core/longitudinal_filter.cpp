@@ -1,0 +1,120 @@
+// SPDX-License-Identifier: MIT
+#include "estimator/core/longitudinal_filter.hpp"
+
+#include <algorithm>
+#include <cmath>
+
+namespace holdfast::core {
+namespace {
+
+constexpr double kGravity = 9.80665;  // m/s^2
+constexpr double kDragAreaPrior_m2 = 1.2, kDragAreaPriorSd_m2 = 0.6;
+constexpr double kDragFlapPrior_m2 = 0.20, kDragFlapPriorSd_m2 = 0.15;
+constexpr double kDragSlopePriorSd_m = 4.0;
+constexpr double kSlipPrior = 0.005, kSlipPriorSd = 0.004;
+constexpr double kAccelOffsetSd_mps2 = 0.10;
+constexpr double kDriveGainSd = 0.01;
+constexpr double kDragDrift_m2 = 0.002;  // after one second
+constexpr double kAccelOffsetDrift_mps2 = 0.001;
+
+double square(double v) {
+    return v * v;
+}
+
+}  // namespace
+
+LongitudinalFilter::LongitudinalFilter(const Car& car) : rolling_resistance_(car.rolling_resistance) {
+    Filter::Vector variance{};
+    variance[kSpeed] = square(30.0);
+    variance[kDragArea] = square(kDragAreaPriorSd_m2);
+    variance[kDragFlap] = square(kDragFlapPriorSd_m2);
+    variance[kDragSlopeFront] = variance[kDragSlopeRear] = square(kDragSlopePriorSd_m);
+    variance[kSlipDrive] = variance[kSlipBrake] = square(kSlipPriorSd);
+    variance[kAccelOffset] = square(kAccelOffsetSd_mps2);
+    variance[kDriveGain] = square(kDriveGainSd);
+    filter_.set_diagonal(variance);
+    filter_.x[kDragArea] = kDragAreaPrior_m2;
+    filter_.x[kDragFlap] = kDragFlapPrior_m2;
+    filter_.x[kSlipDrive] = filter_.x[kSlipBrake] = kSlipPrior;
+}
+
+void LongitudinalFilter::predict(double dt_s, double accel_x_mps2, double noise_density) {
+    filter_.x[kSpeed] += dt_s * (accel_x_mps2 - filter_.x[kAccelOffset]);
+    for (std::size_t j = kAccelOffset; j < kLongitudinalCount; ++j) {
+        auto& column = filter_.column(j);
+        column[kSpeed] -= dt_s * column[kAccelOffset];
+    }
+    filter_.diagonal(kSpeed) +=
+        noise_density * dt_s;  // speed is the first state: its own noise is its own diagonal
+}
+
+void LongitudinalFilter::drift(double elapsed_s, double common_share) {
+    filter_.add_noise(kDragArea,
+                      (square(kDragDrift_m2) + square(common_share * filter_.x[kDragArea])) * elapsed_s);
+    filter_.add_noise(kAccelOffset, square(kAccelOffsetDrift_mps2) * elapsed_s);
+}
+
+void LongitudinalFilter::restart(double speed_mps) {
+    filter_.reset_state(kSpeed, square(1.0));
+    filter_.x[kSpeed] = speed_mps;
+}
+
+LongitudinalFilter::Filter::Vector LongitudinalFilter::J_speed_state(const Filter::Vector& x,
+                                                                     double force_in_weights) {
+    Filter::Vector h{};
+    const LongitudinalState slip = force_in_weights >= 0.0 ? kSlipDrive : kSlipBrake;
+    h[kSpeed] = 1.0 + x[slip] * force_in_weights;
+    h[slip] = x[kSpeed] * force_in_weights;
+    return h;
+}
+
+LongitudinalFilter::Filter::Vector LongitudinalFilter::J_drag_state(const DragInput& in) {
+    Filter::Vector h{};
+    h[kDragArea] = in.dynamic_pressure_pa;
+    h[kDragFlap] = -in.dynamic_pressure_pa * in.missing;
+    h[kDragSlopeFront] = in.dynamic_pressure_pa * in.dh_front_m;
+    h[kDragSlopeRear] = in.dynamic_pressure_pa * in.dh_rear_m;
+    h[kAccelOffset] = -in.mass_kg;
+    h[kDriveGain] = in.drive_force_n;
+    return h;
+}
+
+Innovation<double> LongitudinalFilter::update_speed(double measured_mps, double tyre_force_n, double weight_n,
+                                                    double noise_sd_mps, double gate) {
+    const double force_in_weights = tyre_force_n / weight_n;
+    const auto h = J_speed_state(filter_.x, force_in_weights);
+    const double predicted = filter_.x[kSpeed] * h[kSpeed];  // the slip's own entry is the derivative of this
+    Innovation<double> out{measured_mps - predicted, 0.0};
+    out.variance = filter_.expect(h, square(noise_sd_mps));
+    if (square(out.value) <= square(gate) * out.variance) filter_.apply(out.value);
+    return out;
+}
+
+Innovation<double> LongitudinalFilter::update_drag(const DragInput& in, double gate) {
+    const auto h = J_drag_state(in);
+    const double rolling = rolling_resistance_.value * (in.mass_kg * kGravity + in.downforce_n);
+    const double left = in.drive_force_n - rolling - in.mass_kg * in.accel_x_mps2;
+    double predicted = 0.0;
+    for (std::size_t i = 0; i < kLongitudinalCount; ++i) predicted += h[i] * filter_.x[i];
+    Innovation<double> out{left - predicted, 0.0};
+    out.variance = filter_.expect(h, square(in.noise_sd_n));
+    if (square(out.value) <= square(gate) * out.variance) filter_.apply(out.value);
+    return out;
+}
+
+Quantity LongitudinalFilter::drag_area(double dh_front_m, double dh_rear_m, double missing, double missing_sd,
+                                       double dynamic_pressure_pa, double vertical_force_n) const {
+    DragInput unit;
+    unit.dynamic_pressure_pa = 1.0;
+    unit.dh_front_m = dh_front_m;
+    unit.dh_rear_m = dh_rear_m;
+    unit.missing = missing;
+    const auto h = J_drag_state(unit);
+    double area = 0.0;
+    for (std::size_t i = 0; i < kLongitudinalCount; ++i) area += h[i] * filter_.x[i];
+    const double rolling_sd = rolling_resistance_.sd * vertical_force_n / std::max(dynamic_pressure_pa, 1.0);
+    const double flap_sd = filter_.x[kDragFlap] * missing_sd;
+    return {area, std::sqrt(filter_.variance_of(h) + square(rolling_sd) + square(flap_sd))};
+}
+
+}  // namespace holdfast::core

@@ -1,0 +1,69 @@
+// SPDX-License-Identifier: MIT
+// The filter along the track: true speed (wheel slip taken out) and the drag area, from speed, longitudinal
+// acceleration and drive force. Its own small filter: it shares no state with the vertical one, only the
+// missing share of the flap and the ride heights enter it as known. MODEL.md [speed], [drag-balance].
+#pragma once
+
+#include "estimator/core/car.hpp"
+#include "estimator/core/ud_filter.hpp"
+
+namespace holdfast::core {
+
+enum LongitudinalState : std::size_t {
+    kSpeed,           // m/s
+    kDragArea,        // m^2 at the static ride height, flap closed and flow attached
+    kDragFlap,        // m^2 that goes with the flap's flow
+    kDragSlopeFront,  // m^2/m with the front ride height
+    kDragSlopeRear,   // m^2/m
+    kSlipDrive,       // relative excess of measured speed for a drive force of one weight
+    kSlipBrake,       // relative lack of measured speed for a brake force of one weight
+    kAccelOffset,     // m/s^2, measured minus true
+    kDriveGain,       // relative error of the drive force
+    kLongitudinalCount,
+};
+
+class LongitudinalFilter {
+  public:
+    using Filter = UdFilter<double, kLongitudinalCount>;
+
+    explicit LongitudinalFilter(const Car& car);
+
+    // accel_x measured, m/s^2; noise_variance_rate its two-sided spectral density, (m/s^2)^2 s.
+    void predict(double dt_s, double accel_x_mps2, double noise_density);
+    void drift(double elapsed_s, double common_share);
+    void restart(double speed_mps);
+
+    struct DragInput {
+        double drive_force_n = 0.0;
+        double accel_x_mps2 = 0.0;  // mean over the interval of the measurement
+        double dynamic_pressure_pa = 0.0;
+        double dh_front_m = 0.0;
+        double dh_rear_m = 0.0;
+        double missing = 0.0;
+        double downforce_n = 0.0;
+        double mass_kg = 0.0;
+        double noise_sd_n = 0.0;
+    };
+    // Measured speed against true speed with slip; tyre_force_n along x. Returns the innovation before any
+    // update; used only where |innovation| <= gate standard deviations.
+    Innovation<double> update_speed(double measured_mps, double tyre_force_n, double weight_n,
+                                    double noise_sd_mps, double gate);
+    // Force balance along x when not braking.
+    Innovation<double> update_drag(const DragInput& input, double gate);
+
+    [[nodiscard]] double speed_mps() const { return filter_.x[kSpeed]; }
+    [[nodiscard]] double accel_offset_mps2() const { return filter_.x[kAccelOffset]; }
+    // Drag area and its standard uncertainty now, rolling resistance's share included.
+    [[nodiscard]] Quantity drag_area(double dh_front_m, double dh_rear_m, double missing, double missing_sd,
+                                     double dynamic_pressure_pa, double vertical_force_n) const;
+    [[nodiscard]] Filter& filter() { return filter_; }
+    [[nodiscard]] const Filter& filter() const { return filter_; }
+    [[nodiscard]] static Filter::Vector J_speed_state(const Filter::Vector& x, double force_in_weights);
+    [[nodiscard]] static Filter::Vector J_drag_state(const DragInput& input);
+
+  private:
+    Filter filter_;
+    Quantity rolling_resistance_;
+};
+
+}  // namespace holdfast::core
