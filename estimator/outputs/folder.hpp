@@ -77,6 +77,7 @@ class Folder : public Sink {
     [[nodiscard]] const std::filesystem::path& path() const { return path_; }
     [[nodiscard]] const Outing& outing() const { return outing_; }
     [[nodiscard]] const Tally& tally() const { return tally_; }
+    [[nodiscard]] const LinkCounters& link_counters() const { return link_; }  // empty where there is no link
     // The summary as last written.
     [[nodiscard]] const std::string& summary() const { return summary_; }
 

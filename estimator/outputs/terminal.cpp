@@ -87,6 +87,13 @@ std::string sensors_lines(const Tally& tally, const StreamInfo& stream) {
     return text;
 }
 
+std::string link_line(const LinkCounters& counters) {
+    if (counters.empty()) return {};
+    std::string text = "  link:";
+    for (const auto& [name, count] : counters) text += " " + name + " " + std::to_string(count);
+    return text + "\n";
+}
+
 }  // namespace
 
 std::string closure_line(const core::Closure& c) {
@@ -115,6 +122,7 @@ std::string summary_lines(const Folder& folder, const RunEnd& end) {
         text += "  areas refer to speed over ground (no pitot): the wind is in them\n";
     if (tally.in_standard_air()) text += "  air density is the standard atmosphere's (no weather channels)\n";
     text += sensors_lines(tally, stream);
+    text += link_line(folder.link_counters());
     return text + "  files: " + folder.path().string() + "\n";
 }
 

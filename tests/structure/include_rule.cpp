@@ -44,9 +44,7 @@ const std::vector<Library> kLibraries{
     {"Eigen/", {"estimator/core"}, true},
     {"toml", {"estimator/session"}, false},
     {"nlohmann/", {"estimator/outputs"}, false},
-    {"CLI/",
-     {"estimator/commands", "estimator/holdfast.cpp", "firmware_host/node", "firmware_host/carnode.cpp"},
-     false},
+    {"CLI/", {"estimator/holdfast.cpp", "firmware_host/node", "firmware_host/carnode.cpp"}, false},
     {"zmq", {"estimator/link"}, false},
     {"google/protobuf/", {"proto"}, false},
 };
