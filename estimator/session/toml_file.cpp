@@ -2,8 +2,9 @@
 #include "estimator/session/toml_file.hpp"
 
 #include <algorithm>
-#include <cstring>
+#include <optional>
 #include <sstream>
+#include <string_view>
 #include <utility>
 
 #define TOML_HEADER_ONLY 1
@@ -54,6 +55,36 @@ void flatten(const toml::table& table, const Path& path, std::vector<TomlEntry>&
     }
 }
 
+// TOML allows other characters than ASCII only in comments and strings. toml++ 3.3 has undefined behaviour
+// over some of them elsewhere (its issues 190 and 295), so that it must not see such a file.
+std::optional<std::size_t> find_stray_character(std::string_view text) {
+    constexpr std::string_view kByteOrderMark = "\xef\xbb\xbf";
+    std::string_view closing;  // of the string at `at`; empty: in none
+    for (std::size_t at = text.starts_with(kByteOrderMark) ? kByteOrderMark.size() : 0; at < text.size();
+         ++at) {
+        const std::string_view rest = text.substr(at);
+        const bool in_string = !closing.empty();
+        if (in_string && closing[0] == '"' && rest[0] == '\\') {
+            ++at;  // what is escaped ends nothing
+        } else if (in_string && rest.starts_with(closing)) {
+            at += closing.size() - 1;
+            closing = {};
+        } else if (in_string) {
+            if (rest[0] == '\n' && closing.size() == 1) closing = {};
+        } else if (rest[0] == '#') {
+            at = std::min(text.find('\n', at), text.size() - 1);
+        } else if (rest.starts_with("\"\"\"") || rest.starts_with("'''")) {
+            closing = rest.substr(0, 3);
+            at += 2;
+        } else if (rest[0] == '"' || rest[0] == '\'') {
+            closing = rest.substr(0, 1);
+        } else if (static_cast<unsigned char>(rest[0]) >= 0x80) {
+            return at;
+        }
+    }
+    return std::nullopt;
+}
+
 }  // namespace
 
 std::string TomlEntry::key() const {
@@ -78,6 +109,16 @@ Result<std::vector<TomlEntry>> read_toml_file(const std::string& path) {
     } while (file->refill());
     if (file->failure()) return Error{.file = path, .message = *file->failure()};
 
+    if (const auto stray = find_stray_character(text)) {
+        const auto line_breaks =
+            std::count(text.begin(), text.begin() + static_cast<std::ptrdiff_t>(*stray), '\n');
+        const std::size_t line_end = std::min(text.find('\n', *stray), text.size());
+        return Error{
+            .file = path,
+            .line = static_cast<std::uint64_t>(line_breaks) + 1,
+            .message = "not TOML at " + in_quotes(text.substr(*stray, line_end - *stray)) +
+                       "; expected letters with accents, signs like µ and the like only within quotes"};
+    }
     const toml::parse_result parsed = toml::parse(text, path);
     if (!parsed) {
         const toml::parse_error& error = parsed.error();

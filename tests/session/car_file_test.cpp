@@ -267,6 +267,23 @@ TEST_CASE("files that are no car file") {
     CHECK_FALSE(read_car(""));
 }
 
+TEST_CASE("characters beyond ASCII belong in comments and texts") {
+    const std::string text = with_line("name", "name = \"№ 12 \\\" µ\"  # Träger, µ");
+    CHECK(good_car(text).name == "№ 12 \" µ");
+    CHECK(good_car("\xef\xbb\xbf" + kSmallCar).name == "Number 12");
+    CHECK(good_car(with_line("name", "name = 'µ'\nfuel_per_lap_sd = 0.1 # \"")).name == "µ");
+    CHECK(good_car(with_line("name", "name = \"\"\"\nµ \"µ\" \"\"\"")).name == "µ \"µ\" ");
+    for (const char* line :
+         {"mass = 780 µ", "µ = 3", "mass = 780\u00a0", "name = \"x\" §", "name = \"x§\n§ = 1"}) {
+        INFO(line);
+        const auto car = read_car(with_line("mass", line));
+        REQUIRE_FALSE(car);
+        REQUIRE(car.errors().size() == 1);
+        CHECK(car.errors()[0].line >= line_in(kSmallCar, "mass"));
+        CHECK_THAT(car.errors()[0].message, Contains("not TOML"));
+    }
+}
+
 TEST_CASE("all errors of a car file come at once, in the order of their lines") {
     std::string text = with_line("mass", "mass = 1\nmas = 3");
     text.replace(text.find("chord = 0.24"), 12, "chord = \"long\"");
