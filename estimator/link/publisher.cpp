@@ -65,16 +65,17 @@ struct Publisher::Socket {
         return SendResult::stalled;
     }
 
-    // A subscription is a byte 1, its end a byte 0, then the topic.
+    // A subscription is a byte 1, its end a byte 0, then what the topics it is for begin with.
     void count_subscriptions() {
         zmq::message_t message;
         while (socket.recv(message, zmq::recv_flags::dontwait)) {
             const std::string_view text = message.to_string_view();
-            const auto topic = text.empty() ? std::nullopt : topic_named(text.substr(1));
-            if (!topic) continue;
-            std::size_t& count = subscribers[static_cast<std::size_t>(*topic)];
-            if (text[0] == 1) ++count;
-            if (text[0] == 0 && count > 0) --count;
+            if (text.empty()) continue;
+            for (std::size_t topic = 0; topic < kTopicCount; ++topic) {
+                if (!name(static_cast<Topic>(topic)).starts_with(text.substr(1))) continue;
+                if (text[0] == 1) ++subscribers[topic];
+                if (text[0] == 0 && subscribers[topic] > 0) --subscribers[topic];
+            }
         }
     }
 };

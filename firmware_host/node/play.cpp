@@ -1,0 +1,91 @@
+// SPDX-License-Identifier: MIT
+#include "firmware_host/node/play.hpp"
+
+#include <memory>
+#include <utility>
+
+#include "estimator/session/bind.hpp"
+#include "estimator/session/car_file.hpp"
+#include "estimator/session/log_source.hpp"
+#include "firmware_host/node/exit_status.hpp"
+#include "firmware_host/node/interrupt.hpp"
+#include "firmware_host/node/report.hpp"
+#include "firmware_host/node/sending.hpp"
+#include "firmware_host/node/uplink.hpp"
+
+namespace holdfast::node {
+namespace {
+
+void tell(const session::Errors& errors) {
+    for (const session::Error& error : errors) tell_error(session::to_string(error));
+}
+
+// The log, or nullptr: why has been told.
+std::unique_ptr<session::LogSource> open(const PlayOptions& options) {
+    session::LogOptions log_options;
+    if (!options.channels.empty()) {
+        auto map = session::read_channel_map(options.channels);
+        if (!map) {
+            tell(map.errors());
+            return nullptr;
+        }
+        log_options.channels = std::move(*map);
+    }
+    auto log = session::open_log(options.log, log_options);
+    if (!log) {
+        tell(log.errors());
+        return nullptr;
+    }
+    return std::move(*log);
+}
+
+bool suits_car(const StreamInfo& stream, const std::string& car) {
+    if (car.empty()) return true;
+    const auto car_file = session::read_car_file(car);
+    const session::Errors errors = car_file ? session::check_against(*car_file, stream) : car_file.errors();
+    tell(errors);
+    return errors.empty();
+}
+
+}  // namespace
+
+int play(const PlayOptions& options) {
+    const auto log = open(options);
+    if (log == nullptr || !suits_car(log->info(), options.car)) return kFailed;
+    auto publisher =
+        link::Publisher::bind({.endpoint = options.link.bind, .when_full = options.link.when_full});
+    if (!publisher) {
+        tell_error(publisher.error().message);
+        return kFailed;
+    }
+    note_interrupts();
+    Uplink uplink(std::move(*publisher), log->info());
+    tell_note("streaming " + options.log + " on " + uplink.endpoint());
+
+    const auto next = [&](Frame& frame) {
+        while (log->next(frame))
+            if (frame.time_s() >= options.start_s) return frame.time_s() < options.end_s;
+        return false;
+    };
+    SteadyTime time;
+    Pacer pacer(options.link.pace, time);
+    bool stalled = false;
+    const auto send = [&](std::span<const Frame> frames) {
+        const link::SendResult result = uplink.send(frames);
+        stalled = result == link::SendResult::stalled;
+        return !stalled && result != link::SendResult::interrupted;
+    };
+    if (uplink.wait_for_subscribers(options.link.wait))
+        send_all(next, batch_rule(options.link.pace, options.link.batch_ms), pacer, send);
+
+    std::string reason;
+    if (log->error()) reason = session::to_string(*log->error());
+    if (interrupted()) reason = interrupt_reason();
+    if (stalled) reason = "a subscriber took nothing for too long";
+    uplink.end(reason.empty(), reason);
+    if (!reason.empty()) tell_error(reason);
+    tell_note(sending_report(uplink, pacer));
+    return stalled ? kFailed : reason.empty() ? kDone : kIncomplete;
+}
+
+}  // namespace holdfast::node

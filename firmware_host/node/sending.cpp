@@ -1,0 +1,39 @@
+// SPDX-License-Identifier: MIT
+#include "firmware_host/node/sending.hpp"
+
+#include <limits>
+#include <vector>
+
+#include "firmware_host/node/interrupt.hpp"
+
+namespace holdfast::node {
+namespace {
+
+// About a second at 400 Hz, some 50 KiB: large enough that the cost of a message does not count, small enough
+// that a replay shows its results steadily.
+constexpr std::size_t kRowsOfLargeMessage = 512;
+
+}  // namespace
+
+BatchRule batch_rule(double pace, double batch_ms) {
+    if (pace == 0)
+        return {.span_ns = std::numeric_limits<std::int64_t>::max(), .most_rows = kRowsOfLargeMessage};
+    return {.span_ns = static_cast<std::int64_t>(batch_ms * 1e6 * pace), .most_rows = kRowsOfLargeMessage};
+}
+
+void send_all(const FrameSource& next, const BatchRule& rule, Pacer& pacer, const BatchSink& send) {
+    std::vector<Frame> batch;
+    Frame frame;
+    bool more = next(frame);
+    while (more && !interrupted()) {
+        batch.assign(1, frame);
+        while ((more = next(frame)) && batch.size() < rule.most_rows &&
+               frame.time_ns - batch.front().time_ns < rule.span_ns)
+            batch.push_back(frame);
+        while (!pacer.wait_for(batch.back().time_ns))
+            if (interrupted()) return;
+        if (!send(batch)) return;
+    }
+}
+
+}  // namespace holdfast::node
