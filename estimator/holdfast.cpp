@@ -6,7 +6,7 @@
 
 #include "estimator/commands/cautions.hpp"
 #include "estimator/commands/commands.hpp"
-#include "estimator/commands/exit_status.hpp"
+#include "proto/vocabulary/exit_status.hpp"
 
 namespace {
 
@@ -85,7 +85,7 @@ int main(int argc, char** argv) {
     try {
         app.parse(argc, argv);
     } catch (const CLI::ParseError& error) {
-        return app.exit(error) == 0 ? kDone : kWrongUse;
+        return app.exit(error) == 0 ? holdfast::kDone : holdfast::kWrongUse;
     }
 
     try {
@@ -96,5 +96,5 @@ int main(int argc, char** argv) {
     } catch (const std::exception& error) {
         std::cerr << "error: " << error.what() << '\n';
     }
-    return kFailed;
+    return holdfast::kFailed;
 }

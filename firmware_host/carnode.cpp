@@ -7,8 +7,8 @@
 #include <map>
 
 #include "firmware_host/node/drive.hpp"
-#include "firmware_host/node/exit_status.hpp"
 #include "firmware_host/node/play.hpp"
+#include "proto/vocabulary/exit_status.hpp"
 
 namespace {
 
@@ -84,7 +84,7 @@ int main(int argc, char** argv) {
         if (drive_words->parsed() && bind->empty() && record->empty())
             throw CLI::RequiredError("--bind or --record");
     } catch (const CLI::ParseError& error) {
-        return app.exit(error) == 0 ? kDone : kWrongUse;
+        return app.exit(error) == 0 ? holdfast::kDone : holdfast::kWrongUse;
     }
 
     try {
@@ -92,5 +92,5 @@ int main(int argc, char** argv) {
     } catch (const std::exception& error) {
         std::cerr << "error: " << error.what() << '\n';
     }
-    return kFailed;
+    return holdfast::kFailed;
 }

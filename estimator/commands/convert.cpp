@@ -5,11 +5,11 @@
 #include <utility>
 
 #include "estimator/commands/commands.hpp"
-#include "estimator/commands/exit_status.hpp"
-#include "estimator/commands/interrupt.hpp"
 #include "estimator/commands/open.hpp"
 #include "estimator/session/csv_writer.hpp"
+#include "estimator/session/interrupt.hpp"
 #include "proto/recording.hpp"
+#include "proto/vocabulary/exit_status.hpp"
 
 namespace holdfast::commands {
 namespace {
@@ -95,14 +95,15 @@ int convert(const ConvertOptions& options) {
     const auto writer = create(options.out, source->info());
     if (writer == nullptr) return kFailed;
 
-    note_interrupts();
+    session::note_interrupts();
     Frame frame;
-    while (!interrupted() && source->next(frame))
+    while (!session::interrupted() && source->next(frame))
         if (const auto error = writer->write(frame)) return fail(*error);
-    const bool complete = !interrupted() && !source->error();
+    const bool complete = !session::interrupted() && !source->error();
     if (const auto error = writer->finish(complete)) return fail(*error);
     if (complete) return kDone;
-    std::cerr << "error: " << (interrupted() ? interrupt_reason() : session::to_string(*source->error()))
+    std::cerr << "error: "
+              << (session::interrupted() ? session::interrupt_reason() : session::to_string(*source->error()))
               << '\n'
               << options.out << " holds what was read until then\n";
     return kIncomplete;

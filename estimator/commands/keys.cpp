@@ -2,8 +2,8 @@
 #include <iostream>
 
 #include "estimator/commands/commands.hpp"
-#include "estimator/commands/exit_status.hpp"
 #include "estimator/session/car_keys.hpp"
+#include "proto/vocabulary/exit_status.hpp"
 
 namespace holdfast::commands {
 

@@ -10,14 +10,14 @@
 #include <utility>
 
 #include "estimator/commands/commands.hpp"
-#include "estimator/commands/exit_status.hpp"
-#include "estimator/commands/interrupt.hpp"
 #include "estimator/commands/silence.hpp"
 #include "estimator/commands/stage.hpp"
 #include "estimator/commands/wire_sink.hpp"
 #include "estimator/link/frame_receiver.hpp"
 #include "estimator/link/publisher.hpp"
 #include "estimator/outputs/text.hpp"
+#include "estimator/session/interrupt.hpp"
+#include "proto/vocabulary/exit_status.hpp"
 
 namespace holdfast::commands {
 namespace {
@@ -39,7 +39,7 @@ class Listening {
           publisher_(std::move(publisher)) {}
 
     int until_the_end() {
-        while (!interrupted()) {
+        while (!session::interrupted()) {
             const Arrival arrival = receiver_.receive(kLook);
             watch_silence(arrival.kind);
             if (arrival.kind == Arrival::Kind::stream && !begin_stream()) return kFailed;
@@ -49,7 +49,7 @@ class Listening {
                 return leave(end.complete, "the node's own input broke off: " + end.reason);
             }
         }
-        return leave(false, interrupt_reason());
+        return leave(false, session::interrupt_reason());
     }
 
   private:
@@ -155,7 +155,7 @@ int live(const LiveOptions& options) {
         std::cerr << "publishing on " << publisher->endpoint() << '\n';
     }
     std::cerr << "listening to " << options.from << '\n';
-    note_interrupts();
+    session::note_interrupts();
     return Listening(options, std::move(*car_file), std::move(*receiver), std::move(publisher))
         .until_the_end();
 }

@@ -9,16 +9,7 @@
 namespace holdfast::commands {
 
 std::unique_ptr<session::LogSource> open(const std::string& log, const std::string& channels, bool strict) {
-    session::LogOptions options{.channels = {}, .strict = strict};
-    if (!channels.empty()) {
-        auto map = session::read_channel_map(channels);
-        if (!map) {
-            tell(map.errors());
-            return nullptr;
-        }
-        options.channels = std::move(*map);
-    }
-    auto source = session::open_log(log, options);
+    auto source = session::open_log(log, channels, strict);
     if (!source) {
         tell(source.errors());
         return nullptr;

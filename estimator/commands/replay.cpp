@@ -3,10 +3,10 @@
 #include <memory>
 
 #include "estimator/commands/commands.hpp"
-#include "estimator/commands/exit_status.hpp"
-#include "estimator/commands/interrupt.hpp"
 #include "estimator/commands/open.hpp"
 #include "estimator/commands/stage.hpp"
+#include "estimator/session/interrupt.hpp"
+#include "proto/vocabulary/exit_status.hpp"
 
 namespace holdfast::commands {
 
@@ -19,14 +19,14 @@ int replay(const ReplayOptions& options) {
 
     Stage stage(*car_file, *bound, source->info(), options.log, options.results.out, options.results,
                 nullptr);
-    note_interrupts();
+    session::note_interrupts();
     Frame frame;
-    while (!interrupted() && source->next(frame)) {
+    while (!session::interrupted() && source->next(frame)) {
         stage.step(frame);
         stage.set_progress(source->progress());
     }
-    if (interrupted()) {
-        stage.finish(false, interrupt_reason());
+    if (session::interrupted()) {
+        stage.finish(false, session::interrupt_reason());
         return kIncomplete;
     }
     if (const auto& error = source->error()) {

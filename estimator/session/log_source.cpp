@@ -25,4 +25,15 @@ Result<std::unique_ptr<LogSource>> open_log(const std::string& path, const LogOp
     return RecordingLog::open(path, options.strict);
 }
 
+Result<std::unique_ptr<LogSource>> open_log(const std::string& path, const std::string& channel_map,
+                                            bool strict) {
+    LogOptions options{.channels = {}, .strict = strict};
+    if (!channel_map.empty()) {
+        auto map = read_channel_map(channel_map);
+        if (!map) return map.errors();
+        options.channels = std::move(*map);
+    }
+    return open_log(path, options);
+}
+
 }  // namespace holdfast::session

@@ -39,4 +39,8 @@ class LogSource {
 // that cannot be read at all or whose header is no use (exit status 1).
 [[nodiscard]] Result<std::unique_ptr<LogSource>> open_log(const std::string& path, const LogOptions& options);
 
+// As a command line asks for it: with the file of a channel map, or an empty name.
+[[nodiscard]] Result<std::unique_ptr<LogSource>> open_log(const std::string& path,
+                                                          const std::string& channel_map, bool strict);
+
 }  // namespace holdfast::session

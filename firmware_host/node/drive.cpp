@@ -7,14 +7,14 @@
 #include <stdexcept>
 #include <utility>
 
+#include "estimator/session/interrupt.hpp"
 #include "firmware_host/car/car_file.hpp"
 #include "firmware_host/car/outing.hpp"
-#include "firmware_host/node/exit_status.hpp"
-#include "firmware_host/node/interrupt.hpp"
 #include "firmware_host/node/report.hpp"
 #include "firmware_host/node/sending.hpp"
 #include "firmware_host/node/uplink.hpp"
 #include "proto/recording.hpp"
+#include "proto/vocabulary/exit_status.hpp"
 
 namespace holdfast::node {
 namespace {
@@ -105,7 +105,7 @@ int drive(const DriveOptions& options) {
         tell_error(error.what());
         return kWrongUse;
     }
-    note_interrupts();
+    session::note_interrupts();
     if (!options.car.empty())
         write_file(options.car, [&](std::ostream& out) { out << sim::car_file_text(outing->scenario()); });
 
@@ -117,7 +117,7 @@ int drive(const DriveOptions& options) {
                  batch_rule(pacer.pace(), options.link.batch_ms), pacer,
                  [&](std::span<const Frame> frames) { return outlets.send(frames); });
 
-    const std::string reason = interrupted() ? interrupt_reason() : std::string{};
+    const std::string reason = session::interrupted() ? session::interrupt_reason() : std::string{};
     outlets.end(reason.empty(), reason, pacer);
     if (!options.truth.empty()) write_truth(options.truth, *outing);
     if (!reason.empty()) tell_error(reason);

@@ -6,12 +6,12 @@
 
 #include "estimator/session/bind.hpp"
 #include "estimator/session/car_file.hpp"
+#include "estimator/session/interrupt.hpp"
 #include "estimator/session/log_source.hpp"
-#include "firmware_host/node/exit_status.hpp"
-#include "firmware_host/node/interrupt.hpp"
 #include "firmware_host/node/report.hpp"
 #include "firmware_host/node/sending.hpp"
 #include "firmware_host/node/uplink.hpp"
+#include "proto/vocabulary/exit_status.hpp"
 
 namespace holdfast::node {
 namespace {
@@ -22,16 +22,7 @@ void tell(const session::Errors& errors) {
 
 // The log, or nullptr: why has been told.
 std::unique_ptr<session::LogSource> open(const PlayOptions& options) {
-    session::LogOptions log_options;
-    if (!options.channels.empty()) {
-        auto map = session::read_channel_map(options.channels);
-        if (!map) {
-            tell(map.errors());
-            return nullptr;
-        }
-        log_options.channels = std::move(*map);
-    }
-    auto log = session::open_log(options.log, log_options);
+    auto log = session::open_log(options.log, options.channels, false);
     if (!log) {
         tell(log.errors());
         return nullptr;
@@ -49,6 +40,33 @@ bool suits_car(const StreamInfo& stream, const std::string& car) {
 
 }  // namespace
 
+int stream_log(session::LogSource& log, Uplink& uplink, const PlayOptions& options) {
+    const auto next = [&](Frame& frame) {
+        while (log.next(frame))
+            if (frame.time_s() >= options.start_s) return frame.time_s() < options.end_s;
+        return false;
+    };
+    bool stalled = false;
+    const auto send = [&](std::span<const Frame> frames) {
+        const link::SendResult result = uplink.send(frames);
+        stalled = result == link::SendResult::stalled;
+        return !stalled && result != link::SendResult::interrupted;
+    };
+    SteadyTime time;
+    Pacer pacer(options.link.pace, time);
+    if (uplink.wait_for_subscribers(options.link.wait))
+        send_all(next, batch_rule(options.link.pace, options.link.batch_ms), pacer, send);
+
+    std::string reason;
+    if (log.error()) reason = session::to_string(*log.error());
+    if (session::interrupted()) reason = session::interrupt_reason();
+    if (stalled) reason = "a subscriber took nothing for too long";
+    uplink.end(reason.empty(), reason);
+    if (!reason.empty()) tell_error(reason);
+    tell_note(sending_report(uplink, pacer));
+    return stalled ? kFailed : reason.empty() ? kDone : kIncomplete;
+}
+
 int play(const PlayOptions& options) {
     const auto log = open(options);
     if (log == nullptr || !suits_car(log->info(), options.car)) return kFailed;
@@ -58,34 +76,10 @@ int play(const PlayOptions& options) {
         tell_error(publisher.error().message);
         return kFailed;
     }
-    note_interrupts();
+    session::note_interrupts();
     Uplink uplink(std::move(*publisher), log->info());
     tell_note("streaming " + options.log + " on " + uplink.endpoint());
-
-    const auto next = [&](Frame& frame) {
-        while (log->next(frame))
-            if (frame.time_s() >= options.start_s) return frame.time_s() < options.end_s;
-        return false;
-    };
-    SteadyTime time;
-    Pacer pacer(options.link.pace, time);
-    bool stalled = false;
-    const auto send = [&](std::span<const Frame> frames) {
-        const link::SendResult result = uplink.send(frames);
-        stalled = result == link::SendResult::stalled;
-        return !stalled && result != link::SendResult::interrupted;
-    };
-    if (uplink.wait_for_subscribers(options.link.wait))
-        send_all(next, batch_rule(options.link.pace, options.link.batch_ms), pacer, send);
-
-    std::string reason;
-    if (log->error()) reason = session::to_string(*log->error());
-    if (interrupted()) reason = interrupt_reason();
-    if (stalled) reason = "a subscriber took nothing for too long";
-    uplink.end(reason.empty(), reason);
-    if (!reason.empty()) tell_error(reason);
-    tell_note(sending_report(uplink, pacer));
-    return stalled ? kFailed : reason.empty() ? kDone : kIncomplete;
+    return stream_log(*log, uplink, options);
 }
 
 }  // namespace holdfast::node

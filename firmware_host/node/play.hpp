@@ -7,7 +7,13 @@
 
 #include "estimator/link/publisher.hpp"
 
+namespace holdfast::session {
+class LogSource;
+}
+
 namespace holdfast::node {
+
+class Uplink;
 
 // Where frames go and how fast; common to play and drive.
 struct LinkOptions {
@@ -29,5 +35,8 @@ struct PlayOptions {
 
 // The program's exit status; what went wrong stands on standard error by then.
 [[nodiscard]] int play(const PlayOptions& options);
+
+// What play does once everything is open: waits for subscribers, sends, and says that the stream is over.
+[[nodiscard]] int stream_log(session::LogSource& log, Uplink& uplink, const PlayOptions& options);
 
 }  // namespace holdfast::node

@@ -4,7 +4,7 @@
 #include <limits>
 #include <vector>
 
-#include "firmware_host/node/interrupt.hpp"
+#include "estimator/session/interrupt.hpp"
 
 namespace holdfast::node {
 namespace {
@@ -25,13 +25,13 @@ void send_all(const FrameSource& next, const BatchRule& rule, Pacer& pacer, cons
     std::vector<Frame> batch;
     Frame frame;
     bool more = next(frame);
-    while (more && !interrupted()) {
+    while (more && !session::interrupted()) {
         batch.assign(1, frame);
         while ((more = next(frame)) && batch.size() < rule.most_rows &&
                frame.time_ns - batch.front().time_ns < rule.span_ns)
             batch.push_back(frame);
         while (!pacer.wait_for(batch.back().time_ns))
-            if (interrupted()) return;
+            if (session::interrupted()) return;
         if (!send(batch)) return;
     }
 }

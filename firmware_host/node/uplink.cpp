@@ -5,7 +5,7 @@
 #include <thread>
 #include <utility>
 
-#include "firmware_host/node/interrupt.hpp"
+#include "estimator/session/interrupt.hpp"
 
 namespace holdfast::node {
 namespace {
@@ -24,7 +24,7 @@ Uplink::Uplink(link::Publisher publisher, StreamInfo info)
     : publisher_(std::move(publisher)), info_(std::move(info)), stream_id_(proto::draw_stream_id()) {}
 
 bool Uplink::wait_for_subscribers(std::size_t count) {
-    while (!interrupted())
+    while (!session::interrupted())
         if (publisher_.wait_for_subscribers(link::Topic::frames, count, kLook)) return true;
     return false;
 }

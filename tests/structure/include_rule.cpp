@@ -27,11 +27,11 @@ const std::vector<Room> kRooms{
     {"estimator/commands",
      {"proto", "proto/vocabulary", "estimator/core", "estimator/session", "estimator/link",
       "estimator/outputs"}},
-    {"estimator/holdfast.cpp", {"estimator/commands"}},
+    {"estimator/holdfast.cpp", {"estimator/commands", "proto/vocabulary"}},
     {"firmware_host/car", {"proto/vocabulary"}},
     {"firmware_host/node",
      {"proto", "proto/vocabulary", "estimator/session", "estimator/link", "firmware_host/car"}},
-    {"firmware_host/carnode.cpp", {"firmware_host/node"}},
+    {"firmware_host/carnode.cpp", {"firmware_host/node", "proto/vocabulary"}},
 };
 
 struct Library {

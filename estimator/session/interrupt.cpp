@@ -1,9 +1,9 @@
 // SPDX-License-Identifier: MIT
-#include "estimator/commands/interrupt.hpp"
+#include "estimator/session/interrupt.hpp"
 
 #include <csignal>
 
-namespace holdfast::commands {
+namespace holdfast::session {
 namespace {
 
 volatile std::sig_atomic_t noted_signal = 0;
@@ -31,4 +31,4 @@ std::string interrupt_reason() {
     return noted_signal == SIGTERM ? "stopped by SIGTERM" : "stopped by SIGINT (Ctrl-C)";
 }
 
-}  // namespace holdfast::commands
+}  // namespace holdfast::session
