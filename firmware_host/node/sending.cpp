@@ -13,6 +13,11 @@ namespace {
 // that a replay shows its results steadily.
 constexpr std::size_t kRowsOfLargeMessage = 512;
 
+// Time that runs backwards is far away, and so begins a batch of its own.
+std::uint64_t since(const Frame& frame, const Frame& earlier) {
+    return static_cast<std::uint64_t>(frame.time_ns) - static_cast<std::uint64_t>(earlier.time_ns);
+}
+
 }  // namespace
 
 BatchRule batch_rule(double pace, double batch_ms) {
@@ -28,7 +33,7 @@ void send_all(const FrameSource& next, const BatchRule& rule, Pacer& pacer, cons
     while (more && !session::interrupted()) {
         batch.assign(1, frame);
         while ((more = next(frame)) && batch.size() < rule.most_rows &&
-               frame.time_ns - batch.front().time_ns < rule.span_ns)
+               since(frame, batch.front()) < static_cast<std::uint64_t>(rule.span_ns))
             batch.push_back(frame);
         while (!pacer.wait_for(batch.back().time_ns))
             if (session::interrupted()) return;
