@@ -57,6 +57,7 @@ void draw_flap(FlapParameters& flap, Random& random) {
     flap.opening_time_s = random.uniform(0.03, 0.15);
     flap.smooth_travel = random.happens(0.5);
     flap.actuator_delay_s = random.uniform(0.0, 0.012);
+    flap.overhang_m = random.uniform(0.0, 0.35);
 }
 
 void draw_links(ChassisParameters& car, Random& random) {
@@ -109,10 +110,10 @@ void draw_open_wheel(Scenario& s, Random& random) {
     draw_links(car, random);
     s.aero.floor_front_m = random.uniform(0.042, 0.050);
     s.aero.floor_rear_m = random.uniform(0.090, 0.100);
-    s.aero.front = {random.uniform(1.55, 1.80), random.uniform(0.15, 0.30), random.uniform(0.004, 0.012),
-                    0.018};
-    s.aero.rear = {random.uniform(2.15, 2.50), random.uniform(0.15, 0.30), random.uniform(0.038, 0.050),
-                   0.030};
+    s.aero.front = {random.uniform(1.55, 1.80), random.uniform(0.15, 0.30), random.uniform(-0.010, 0.006),
+                    0.024};
+    s.aero.rear = {random.uniform(2.15, 2.50), random.uniform(0.15, 0.30), random.uniform(0.010, 0.032),
+                   0.045};
     s.aero.drag_base_m2 = random.uniform(0.62, 0.78);
     s.aero.drag_per_downforce2 = random.uniform(0.022, 0.033);
     draw_flap(s.flap, random);
@@ -150,10 +151,10 @@ void draw_prototype(Scenario& s, Random& random) {
     draw_links(car, random);
     s.aero.floor_front_m = random.uniform(0.045, 0.055);
     s.aero.floor_rear_m = random.uniform(0.065, 0.080);
-    s.aero.front = {random.uniform(1.35, 1.65), random.uniform(0.12, 0.25), random.uniform(0.015, 0.022),
-                    0.020};
-    s.aero.rear = {random.uniform(1.75, 2.15), random.uniform(0.12, 0.25), random.uniform(0.030, 0.040),
-                   0.025};
+    s.aero.front = {random.uniform(1.35, 1.65), random.uniform(0.12, 0.25), random.uniform(0.000, 0.014),
+                    0.026};
+    s.aero.rear = {random.uniform(1.75, 2.15), random.uniform(0.12, 0.25), random.uniform(0.008, 0.026),
+                   0.036};
     s.aero.drag_base_m2 = random.uniform(0.55, 0.65);
     s.aero.drag_per_downforce2 = random.uniform(0.020, 0.030);
     draw_flap(s.flap, random);
@@ -197,10 +198,10 @@ void draw_heavy_closed(Scenario& s, Random& random) {
     draw_links(car, random);
     s.aero.floor_front_m = random.uniform(0.055, 0.065);
     s.aero.floor_rear_m = random.uniform(0.070, 0.085);
-    s.aero.front = {random.uniform(0.75, 1.00), random.uniform(0.10, 0.20), random.uniform(0.028, 0.038),
-                    0.025};
-    s.aero.rear = {random.uniform(1.30, 1.60), random.uniform(0.08, 0.18), random.uniform(0.045, 0.055),
-                   0.030};
+    s.aero.front = {random.uniform(0.75, 1.00), random.uniform(0.10, 0.20), random.uniform(0.010, 0.026),
+                    0.032};
+    s.aero.rear = {random.uniform(1.30, 1.60), random.uniform(0.08, 0.18), random.uniform(0.015, 0.035),
+                   0.045};
     s.aero.drag_base_m2 = random.uniform(0.70, 0.80);
     s.aero.drag_per_downforce2 = random.uniform(0.025, 0.040);
     draw_flap(s.flap, random);

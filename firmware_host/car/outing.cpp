@@ -36,7 +36,8 @@ StreamInfo stream_info(const Scenario& scenario) {
     for (std::size_t i = 0; i < kChannelCount; ++i) {
         if (scenario.sensors[i].fitted) info.channels |= std::uint64_t{1} << i;
     }
-    info.origin = "simulated car: " + scenario.name + ", seed " + std::to_string(scenario.seed);
+    info.origin = "simulated car: " + scenario.car_name + " on the " + scenario.circuit.name + " (" +
+                  scenario.name + ", seed " + std::to_string(scenario.seed) + ")";
     return info;
 }
 

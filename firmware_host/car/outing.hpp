@@ -27,7 +27,7 @@ class Outing {
     Outing(Outing&&) noexcept;
     Outing& operator=(Outing&&) noexcept;
 
-    // Names of the ride heights, channels that are fitted, "simulated car: NAME, seed N".
+    // Names of the ride heights, channels that are fitted, and what is driven where by which seed.
     [[nodiscard]] const StreamInfo& info() const;
     [[nodiscard]] const Scenario& scenario() const;
 

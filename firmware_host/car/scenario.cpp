@@ -12,14 +12,15 @@ namespace {
 
 struct Family {
     std::string_view word;
+    std::string_view car;  // what such a car is called
     std::string_view help;
     void (*draw)(Scenario&, Random&);
 };
 
 constexpr Family kFamilies[] = {
-    {"open_wheel", "light, stiff, 5 g brakes, large flap", draw_open_wheel},
-    {"prototype", "1000 kg, closed wheels, smaller flap, 4 g brakes", draw_prototype},
-    {"heavy_closed", "1350 kg, tall, little downforce, 3 g brakes, slow flap", draw_heavy_closed},
+    {"open_wheel", "Plover", "light, stiff, 5 g brakes, large flap", draw_open_wheel},
+    {"prototype", "Curlew", "1000 kg, closed wheels, smaller flap, 4 g brakes", draw_prototype},
+    {"heavy_closed", "Bittern", "1350 kg, tall, little downforce, 3 g brakes, slow flap", draw_heavy_closed},
 };
 
 // What the variants that act before the sensors are drawn leave behind.
@@ -71,6 +72,13 @@ constexpr Variant kVariants[] = {
      [](Scenario& s, Wishes&) { s.flap.shape = Reattachment::separation_point; }},
     {"tail", "flow comes back with a slow tail",
      [](Scenario& s, Wishes&) { s.flap.shape = Reattachment::slow_tail; }},
+    {"peaked", "downforce peaks at a ride height that the car passes as the flap closes",
+     [](Scenario& s, Wishes&) {
+         s.aero.front.best_height_m = 0.20 * s.aero.floor_front_m;
+         s.aero.front.width_m = 0.018;
+         s.aero.rear.best_height_m = 0.46 * s.aero.floor_rear_m;
+         s.aero.rear.width_m = 0.030;
+     }},
     {"demo", "3 laps, 8 closings: two slow, one of these with the brakes close behind",
      [](Scenario& s, Wishes&) {
          s.laps = 3;
@@ -80,7 +88,7 @@ constexpr Variant kVariants[] = {
          slow_in_time.gap_s = 0.42;
          PlannedClosing slow_and_short{.lap = 3, .zone = 1};
          slow_and_short.tau_factor = 3.0;
-         slow_and_short.gap_s = 0.16;
+         slow_and_short.gap_s = 0.10;
          s.planned = {slow_in_time, slow_and_short, {.lap = 1, .zone = 1, .keep_shut = true}};
      }},
     {"long", "20 laps", [](Scenario& s, Wishes&) { s.laps = 20; }},
@@ -137,7 +145,7 @@ Scenario make_scenario(std::string_view name, std::uint64_t seed) {
     Scenario s;
     s.name = name;
     s.seed = seed;
-    s.car_name = std::string(words.front()) + " " + std::to_string(seed);
+    s.car_name = std::string(family->car) + " " + std::to_string(seed);
     Random random(seed, Stream::car);
     family->draw(s, random);
     Random around(seed, Stream::circuit);
