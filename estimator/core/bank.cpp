@@ -10,8 +10,6 @@ namespace {
 
 constexpr double kBaseTau_chords = 13.0;  // the base path: a usual closing; only a reference, any would do
 constexpr std::size_t kBaseStart = 4;
-constexpr double kFlapScatter =
-    0.04;  // relative: the flap is not quite the same from one closing to the next
 constexpr double kNever = std::numeric_limits<double>::quiet_NaN();
 
 }  // namespace
@@ -21,12 +19,24 @@ double tau_chords(std::size_t tau_index) {
     return kTauLeast_chords * std::pow(kTauMost_chords / kTauLeast_chords, share);
 }
 
-void ReattachmentBank::begin(ChassisFilter::Filter& filter, double chord_time_s) {
+void ReattachmentBank::begin(ChassisFilter::Filter& filter, double chord_time_s, const Regain& regain,
+                             double flap_height_factor) {
     running_ = true;
     chord_time_s_ = chord_time_s;
+    // What comes back is the flap as the opening showed it, and a difference that the closed state may have.
+    // The difference moves the area and the flap's size together, so that the level with the flap open stays.
+    StateVector both{};
+    both[kAreaRear] = flap_height_factor;
+    both[kFlapAreaRear] = 1.0;
+    open_flap_mean_ = filter.x[kFlapAreaRear];
+    open_flap_variance_ = filter.diagonal(kFlapAreaRear);
+    difference_variance_ = (regain.ratio_sd * open_flap_mean_) * (regain.ratio_sd * open_flap_mean_);
+    const double difference = (regain.ratio - 1.0) * open_flap_mean_;
+    for (std::size_t i = 0; i < kChassisCount; ++i) filter.x[i] += difference * both[i];
+    height_factor_ = flap_height_factor;
+    filter.add_rank_one(both, difference_variance_);
     flap_prior_mean_ = filter.x[kFlapAreaRear];
-    flap_prior_variance_ =
-        filter.diagonal(kFlapAreaRear) + kFlapScatter * kFlapScatter * flap_prior_mean_ * flap_prior_mean_;
+    flap_prior_variance_ = filter.diagonal(kFlapAreaRear);
     filter.diagonal(kFlapAreaRear) = 0.0;
     base_missing_ = 1.0;
     base_decay_ = 1.0;
@@ -199,12 +209,28 @@ void ReattachmentBank::collapse(ChassisFilter::Filter& filter, const CandidateAr
     });
     for (std::size_t i = 0; i < kFlapAreaRear; ++i) filter.x[i] += mean[i];
     filter.x[kFlapAreaRear] = mean[kFlapAreaRear];
+    forget_difference(filter);
     running_ = false;
 }
 
 void ReattachmentBank::abandon(ChassisFilter::Filter& filter) {
     filter.diagonal(kFlapAreaRear) = flap_prior_variance_;
+    forget_difference(filter);
     running_ = false;
+}
+
+// Back from the flap that came back to the flap that the next opening takes away: what was learned is shared
+// between the opening's size and the difference by their variances. The area may be off by the difference
+// elsewhere.
+void ReattachmentBank::forget_difference(ChassisFilter::Filter& filter) {
+    const double sum = open_flap_variance_ + difference_variance_;
+    const double share = open_flap_variance_ / sum;
+    const double difference = filter.x[kFlapAreaRear] - open_flap_mean_;
+    filter.x[kFlapAreaRear] = open_flap_mean_ + share * (filter.x[kFlapAreaRear] - flap_prior_mean_);
+    filter.scale_state(kFlapAreaRear, std::max(share, 1e-3));
+    filter.add_noise(kFlapAreaRear, share * difference_variance_);
+    const double moved = height_factor_ * difference;
+    filter.add_noise(kAreaRear, moved * moved);
 }
 
 }  // namespace holdfast::core

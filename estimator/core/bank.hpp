@@ -54,11 +54,19 @@ struct CandidateSums {
     double cross = 0.0;
 };
 
+// How much of the flap's opening comes back at a closing, as earlier closings showed: 1 where the areas are
+// as modelled.
+struct Regain {
+    double ratio = 1.0;
+    double ratio_sd = 0.1;
+};
+
 class ReattachmentBank {
   public:
     // Begin at the closing command. The filter's flap size is conditioned on from here on (its variance is
     // put aside) until collapse() gives it back.
-    void begin(ChassisFilter::Filter& filter, double chord_time_s);
+    void begin(ChassisFilter::Filter& filter, double chord_time_s, const Regain& regain,
+               double flap_height_factor);
     [[nodiscard]] bool running() const { return running_; }
 
     // Before the filter's predict: advance every candidate's missing share to time_s. Returns the base path's
@@ -87,6 +95,7 @@ class ReattachmentBank {
     [[nodiscard]] double deviation(std::size_t candidate, std::size_t state, double flap_slope, double flap,
                                    double stay) const;
 
+    [[nodiscard]] double open_flap_mean() const { return open_flap_mean_; }
     [[nodiscard]] double flap_prior_mean() const { return flap_prior_mean_; }
     [[nodiscard]] double flap_prior_variance() const { return flap_prior_variance_; }
     [[nodiscard]] CandidateSums sums(std::size_t candidate) const;
@@ -104,10 +113,15 @@ class ReattachmentBank {
     using Row = Eigen::Array<double, kCount, 1>;
     using StateVector = ChassisFilter::Filter::Vector;
 
+    void forget_difference(ChassisFilter::Filter& filter);
     void share_of_all(double time_s, double dt_s);
 
     bool running_ = false;
     double chord_time_s_ = 0.0;
+    double open_flap_mean_ = 0.0;  // m^2, before the difference of the closed state
+    double open_flap_variance_ = 0.0;
+    double difference_variance_ = 0.0;
+    double height_factor_ = 1.0;
     double flap_prior_mean_ = 0.0;
     double flap_prior_variance_ = 0.0;
     double base_missing_ = 1.0;

@@ -24,6 +24,8 @@ constexpr double kPitotGainSd = 0.01;
 constexpr double kPitotGainMemory_s = 1e4;
 constexpr double kFlapPrior_m2 = 0.70;
 constexpr double kFlapPriorSd_m2 = 0.30;
+// Between a wing that does not feel the ground and one whose part of it scales with the whole.
+constexpr double kFlapSlopePrior_pm = -2.5, kFlapSlopePriorSd_pm = 2.0;
 constexpr double kFlapFrontPriorSd_m2 = 0.12;
 constexpr double kLoadOffsetSensorSd_n = 60.0;  // an axle's two load sensors; common practice, no source
 
@@ -31,7 +33,8 @@ constexpr double kLoadOffsetSensorSd_n = 60.0;  // an axle's two load sensors; c
 constexpr double kAreaDrift_m2 = 0.004;
 constexpr double kWindDrift_mps = 0.10;
 constexpr double kTurnForgets_rad =
-    1.0;  // an unseen turn by so much leaves 1/e of what was known of the wind
+    1.0;                               // an unseen turn by so much leaves 1/e of what was known of the wind
+constexpr double kSlopeDrift_m = 1.5;  // m^2/m: the slope is not the same at every height
 constexpr double kLoadOffsetDrift_n = 0.5;
 constexpr double kFlapDrift_m2 = 0.0005;
 
@@ -82,22 +85,18 @@ ChassisFilter::ChassisFilter(const Car& car) : constants_(car) {
     variance[kLoadOffsetRear] = square(std::hypot(constants_.weight_sd_rear_n, kLoadOffsetSensorSd_n));
     variance[kWindAlong] = variance[kWindAcross] = square(kWindPriorSd_mps);
     variance[kGust] = square(kGustSd);
+    variance[kFlapSlope] = square(kFlapSlopePriorSd_pm);
     variance[kFlapAreaFront] = square(kFlapFrontPriorSd_m2);
     variance[kFlapAreaRear] = square(kFlapPriorSd_m2);
     filter_.set_diagonal(variance);
     filter_.x[kAreaFront] = filter_.x[kAreaRear] = kAreaPrior_m2;
     filter_.x[kSlopeFront] = filter_.x[kSlopeRear] = kSlopePrior_m;
+    filter_.x[kFlapSlope] = kFlapSlopePrior_pm;
     filter_.x[kFlapAreaRear] = kFlapPrior_m2;
 }
 
-double ChassisFilter::height_factor_front(double dh_front_m) const {
-    const double area = std::max(filter_.x[kAreaFront], 0.3);
-    return std::clamp(1.0 + filter_.x[kSlopeFront] * dh_front_m / area, 0.6, 1.6);
-}
-
-double ChassisFilter::height_factor_rear(double dh_rear_m) const {
-    const double area = std::max(filter_.x[kAreaRear], 0.3);
-    return std::clamp(1.0 + filter_.x[kSlopeRear] * dh_rear_m / area, 0.6, 1.6);
+double ChassisFilter::flap_height_factor(double dh_rear_m) const {
+    return std::clamp(1.0 + filter_.x[kFlapSlope] * dh_rear_m, 0.6, 1.6);
 }
 
 void ChassisFilter::predict(const ChassisInput& in) {
@@ -119,8 +118,7 @@ void ChassisFilter::predict(const ChassisInput& in) {
     }
     wind_factor_ = std::clamp(wind_factor_, 0.5, 2.0);
     const double q = in.dynamic_pressure_pa * wind_factor_;
-    const double factor_front = height_factor_front(in.dh_front_m);
-    const double factor_rear = height_factor_rear(in.dh_rear_m);
+    const double factor_rear = flap_height_factor(in.dh_rear_m);
 
     // Forces left over at each axle, [axle-balance]: what accelerates the sprung mass.
     const double transfer = constants_.transfer_per_accel_kg * in.accel_x_mps2;
@@ -145,8 +143,9 @@ void ChassisFilter::predict(const ChassisInput& in) {
     rear[kTransferRear] = -transfer;
     front[kLoadOffsetFront] = -1.0;
     rear[kLoadOffsetRear] = -1.0;
-    front[kFlapAreaFront] = q * factor_front * in.missing;
+    front[kFlapAreaFront] = q * in.missing;
     rear[kFlapAreaRear] = q * factor_rear * in.missing;
+    rear[kFlapSlope] = q * x[kFlapAreaRear] * in.dh_rear_m * in.missing;
 
     // All air forces scale with the wind together.
     double air_front = 0.0;
@@ -171,15 +170,16 @@ void ChassisFilter::predict(const ChassisInput& in) {
     for (std::size_t p = kMovingCount; p < kChassisCount; ++p) {
         step_.heave_accel_by_state[p] = (front[p] + rear[p]) / mass;
         step_.pitch_accel_by_state[p] = (b * rear[p] - a * front[p]) / inertia;
-        if (p == kWindAlong || p == kWindAcross || p == kGust) continue;  // their part is already in q
+        if (p == kWindAlong || p == kWindAcross || p == kGust || p == kFlapSlope)
+            continue;  // in q and factor_rear
         heave_accel += step_.heave_accel_by_state[p] * x[p];
         pitch_accel += step_.pitch_accel_by_state[p] * x[p];
     }
     const double front_per_rear = x[kFlapAreaFront] / std::max(x[kFlapAreaRear], 0.1);
     step_.dt_s = dt;
     step_.heave_accel_mps2 = heave_accel;
-    step_.heave_accel_per_missing_area = q * (factor_rear + factor_front * front_per_rear) / mass;
-    step_.pitch_accel_per_missing_area = q * (b * factor_rear - a * factor_front * front_per_rear) / inertia;
+    step_.heave_accel_per_missing_area = q * (factor_rear + front_per_rear) / mass;
+    step_.pitch_accel_per_missing_area = q * (b * factor_rear - a * front_per_rear) / inertia;
 
     const double half = 0.5 * dt * dt;
     x[kHeave] += dt * x[kHeaveRate] + half * heave_accel;
@@ -239,6 +239,8 @@ void ChassisFilter::drift(double elapsed_s, bool air_speed_measured, double unse
     }
     filter_.add_noise(kAreaFront, square(kAreaDrift_m2) * elapsed_s);
     filter_.add_noise(kAreaRear, square(kAreaDrift_m2) * elapsed_s);
+    filter_.add_noise(kSlopeFront, square(kSlopeDrift_m) * elapsed_s);
+    filter_.add_noise(kSlopeRear, square(kSlopeDrift_m) * elapsed_s);
     filter_.add_noise(kLoadOffsetFront, square(kLoadOffsetDrift_n) * elapsed_s);
     filter_.add_noise(kLoadOffsetRear, square(kLoadOffsetDrift_n) * elapsed_s);
     if (filter_.diagonal(kFlapAreaRear) > 0.0) {

@@ -91,10 +91,8 @@ class ChassisFilter {
     [[nodiscard]] Filter& filter() { return filter_; }
     [[nodiscard]] const Filter& filter() const { return filter_; }
 
-    // Factor on a missing area at this ride height [flap-height]: the flap's share scales as the whole wing
-    // does.
-    [[nodiscard]] double height_factor_front(double dh_front_m) const;
-    [[nodiscard]] double height_factor_rear(double dh_rear_m) const;
+    // Factor on the flap's rear area at this ride height, [flap-height].
+    [[nodiscard]] double flap_height_factor(double dh_rear_m) const;
 
   private:
     ChassisConstants constants_;

@@ -30,6 +30,7 @@ enum ChassisState : std::size_t {
                  // the car
     kWindAcross,  // m/s, wind against the car when its course is east
     kGust,  // -, relative excess of dynamic pressure beside that; the pitot's gain error where there is one
+    kFlapSlope,      // 1/m, relative change of the flap's rear area with the rear ride height
     kFlapAreaFront,  // m^2, front area that goes with the flap's flow
     kFlapAreaRear,   // m^2, rear area that goes with the flap's flow; last, so that it can be conditioned on
     kChassisCount,

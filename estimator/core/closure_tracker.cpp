@@ -41,7 +41,7 @@ void ClosureTracker::begin(const AeroNow& now, double time_command_s, double cho
     chord_m_ = chord_m;
     next_weigh_s_ = now.time_s;
     missing_ = {filter.x[kFlapAreaRear], 0.0, 1.0, 0.0};
-    bank_.begin(filter, chord_m / std::max(now.speed_mps, 5.0));
+    bank_.begin(filter, chord_m / std::max(now.speed_mps, 5.0), usual_.regain(), now.factor_rear);
 }
 
 void ClosureTracker::shut(double time_moved_s, double time_shut_s) {
@@ -124,7 +124,7 @@ void ClosureTracker::judge_shortfall() {
             p.weight * normal_cdf((rear_n - limit) / std::max(std::hypot(sd, limit_sd), 1.0));
         rear_mean += p.weight * rear_n;
         const double all =
-            rear_n * (1.0 + at.factor_front / at.factor_rear);  // front's share of the flap's flow
+            rear_n * (1.0 + at.front_per_rear / at.factor_rear);  // front's share of the flap's flow
         mean += p.weight * all;
         second += p.weight * (all * all + sd * sd);
     }
@@ -148,8 +148,8 @@ void ClosureTracker::judge_shortfall() {
 void ClosureTracker::describe_reattachment(const AeroNow& now) {
     (void)now;
     Closure& c = closure_;
-    double tau = 0.0, tau2 = 0.0, stays = 0.0, flap = 0.0, stay = 0.0, log_chords = 0.0, log_chords2 = 0.0,
-           slow = 0.0;
+    double tau = 0.0, tau2 = 0.0, stays = 0.0, flap = 0.0, flap2 = 0.0, flap_within = 0.0, stay = 0.0,
+           log_chords = 0.0, log_chords2 = 0.0, slow = 0.0;
     const LogNormal usual = usual_.t95_chords();
     const double log_limit = usual.log_mean + std::log(settings_.slow_factor);
     std::array<double, kStartCount> start_share{};
@@ -168,6 +168,8 @@ void ClosureTracker::describe_reattachment(const AeroNow& now) {
         tau2 += p.weight * p.tau_s * p.tau_s;
         stays += p.weight * p.stays;
         flap += p.weight * p.flap_m2;
+        flap2 += p.weight * p.flap_m2 * p.flap_m2;
+        flap_within += p.weight * p.flap_variance;
         stay += p.weight * p.stay_m2;
         log_chords += p.weight * std::log(chords);
         log_chords2 += p.weight * square(std::log(chords));
@@ -188,8 +190,12 @@ void ClosureTracker::describe_reattachment(const AeroNow& now) {
     c.usual_known = usual_.count() >= kUsualKnownAfter;
     c.probability_slow = slow;
     c.slow = slow >= settings_.slow_probability || !c.whole;
-    residual_share_ = c.whole ? 0.0 : 1.0 - c.plateau;
+    stays_share_ = c.whole ? 0.0 : 1.0 - c.plateau;
     const double log_sd = std::sqrt(std::max(log_chords2 - log_chords * log_chords, 1e-4));
+    if (c.whole) {
+        const double flap_sd = std::sqrt(std::max(flap2 - flap * flap, 0.0) + flap_within);
+        usual_.learn_regain(flap / bank_.open_flap_mean(), flap_sd / bank_.open_flap_mean());
+    }
     if (c.whole) usual_.learn(log_chords, log_sd, start_share, shape_share);
 }
 
@@ -197,6 +203,7 @@ void ClosureTracker::finish_bank(const AeroNow& now, double colour, ChassisFilte
     weigh(colour);
     refine(bank_, weights_, posterior_);
     bank_.collapse(filter, weights_.weight, weights_.flap_mean, weights_.flap_variance, weights_.stay_mean);
+    move_stay_into_area(filter);
     if (!shut_ || !usable_) return;
     describe_reattachment(now);
     closure_.flap_downforce_n = now.dynamic_pressure_pa * now.factor_rear * filter.x[kFlapAreaRear];
@@ -209,6 +216,21 @@ void ClosureTracker::finish_bank(const AeroNow& now, double colour, ChassisFilte
                                 {}};
     }
     if (closure_.braked) judge_shortfall();
+}
+
+// What stays detached from now on is a smaller rear area; how much, the next seconds will show.
+void ClosureTracker::move_stay_into_area(ChassisFilter::Filter& filter) {
+    stays_area_m2_ = 0.0;
+    for (std::size_t c = 0; c < kCandidateCount; ++c)
+        stays_area_m2_ += weights_.weight[c] * weights_.stay_mean[c];
+    filter.x[kAreaRear] -= stays_area_m2_;
+    filter.add_noise(kAreaRear, square(stays_area_m2_));
+}
+
+void ClosureTracker::flap_opens(ChassisFilter::Filter& filter) {
+    filter.x[kAreaRear] += stays_area_m2_;
+    filter.add_noise(kAreaRear, square(stays_area_m2_));
+    stays_area_m2_ = stays_share_ = 0.0;
 }
 
 void ClosureTracker::tick(const AeroNow& now, double colour, ChassisFilter::Filter& filter) {

@@ -19,8 +19,8 @@ struct AeroNow {
     double time_s = 0.0;
     double speed_mps = 0.0;
     double dynamic_pressure_pa = 0.0;
-    double factor_rear = 1.0;  // of the flap's areas with ride height
-    double factor_front = 1.0;
+    double factor_rear = 1.0;            // of the flap's rear area with ride height
+    double front_per_rear = 0.0;         // the flap's front area over its rear area
     double rear_area_attached_m2 = 0.0;  // with the flow wholly back
     double rear_area_sd_m2 = 0.0;
     std::int32_t lap = 0;
@@ -56,8 +56,9 @@ class ClosureTracker {
     // Deviation of a state's mixture mean from the base path, while the bank runs.
     [[nodiscard]] double mean_deviation(std::size_t state, const ChassisFilter::Filter& filter) const;
     // Share that stayed detached after the newest closing, until the flap opens again.
-    [[nodiscard]] double residual_share() const { return residual_share_; }
-    void forget_residual() { residual_share_ = 0.0; }
+    [[nodiscard]] double stays_share() const { return stays_share_; }
+    // A new opening takes the rest of the flow away and gives the next closing its chance.
+    void flap_opens(ChassisFilter::Filter& filter);
 
     [[nodiscard]] std::optional<Closure> take_closure();
     [[nodiscard]] std::optional<Alarm> take_alarm();
@@ -66,6 +67,7 @@ class ClosureTracker {
     void weigh(double colour);
     void finish_bank(const AeroNow& now, double colour, ChassisFilter::Filter& filter);
     void describe_reattachment(const AeroNow& now);
+    void move_stay_into_area(ChassisFilter::Filter& filter);
     void judge_shortfall();
     void publish();
 
@@ -81,7 +83,8 @@ class ClosureTracker {
     bool alarmed_ = false;
     bool usable_ = false;  // data were good through the window
     double next_weigh_s_ = 0.0;
-    double residual_share_ = 0.0;
+    double stays_share_ = 0.0;
+    double stays_area_m2_ = 0.0;
     double colour_ = 1.0;
     double chord_m_ = 0.0;
     AeroNow at_brake_;

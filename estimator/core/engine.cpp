@@ -192,7 +192,7 @@ void Engine::step_longitudinal(const Frame& frame, std::uint64_t admitted, doubl
             in.dynamic_pressure_pa = dynamic_pressure_pa();
             in.dh_front_m = front_heights_.smooth_dh_m();
             in.dh_rear_m = rear_heights_.smooth_dh_m();
-            in.missing = missing_open_ * chassis_.height_factor_rear(in.dh_rear_m);
+            in.missing = missing_open_ * chassis_.flap_height_factor(in.dh_rear_m);
             in.downforce_n =
                 in.dynamic_pressure_pa * (chassis_.filter().x[kAreaFront] + chassis_.filter().x[kAreaRear]);
             in.mass_kg = mass_kg();
@@ -234,7 +234,7 @@ void Engine::step_flap(const Frame& frame, std::uint64_t admitted) {
     if (step.reopened || (flap_.phase() == FlapPhase::opening && tracker_.bank().running())) {
         tracker_.end(aero_now(time_s), colour, chassis_.filter(), false);
     }
-    if (flap_.phase() == FlapPhase::opening) tracker_.forget_residual();
+    if (flap_.phase() == FlapPhase::opening) tracker_.flap_opens(chassis_.filter());
 }
 
 void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_s) {
@@ -277,13 +277,12 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
         in.missing = bank.advance(time_s - 0.5 * dt_s, dt_s, flap_.position_now());
         missing_open_ = 1.0;
     } else {
-        const double target = flap_.phase() == FlapPhase::closed ? tracker_.residual_share()
-                                                                 : std::clamp(flap_.position_now(), 0.0, 1.0);
         const double lag_s =
             kOpeningLag_chords * car_.flap_chord_m / std::max(longitudinal_.speed_mps(), 10.0);
         if (flap_.phase() == FlapPhase::closed) {
-            missing_open_ = target;
+            missing_open_ = 0.0;
         } else {
+            const double target = std::clamp(flap_.position_now(), 0.0, 1.0);
             const double before = missing_open_;
             missing_open_ += (1.0 - std::exp(-dt_s / lag_s)) * (target - missing_open_);
             // How the flow leaves is not modelled beyond this lag: half the change is taken as uncertain
@@ -410,9 +409,8 @@ AeroNow Engine::aero_now(double time_s) const {
     now.time_s = time_s;
     now.speed_mps = longitudinal_.speed_mps();
     now.dynamic_pressure_pa = dynamic_pressure_pa();
-    now.factor_rear = chassis_.height_factor_rear(dh_rear);
-    now.factor_front = chassis_.height_factor_front(front_heights_.smooth_dh_m()) * x[kFlapAreaFront] /
-                       std::max(x[kFlapAreaRear], 0.1);
+    now.factor_rear = chassis_.flap_height_factor(dh_rear);
+    now.front_per_rear = x[kFlapAreaFront] / std::max(x[kFlapAreaRear], 0.1);
     now.rear_area_attached_m2 = x[kAreaRear] + x[kSlopeRear] * dh_rear;
     now.rear_area_sd_m2 = std::sqrt(chassis_.filter().variance(kAreaRear));
     now.lap = static_cast<std::int32_t>(std::lround(lap_));
@@ -457,8 +455,7 @@ const Estimate& Engine::estimate() {
     const double wind_factor = chassis_.wind_factor();
     const double dh_front = front_heights_.smooth_dh_m();
     const double dh_rear = rear_heights_.smooth_dh_m();
-    const double factor_front = chassis_.height_factor_front(dh_front);
-    const double factor_rear = chassis_.height_factor_rear(dh_rear);
+    const double factor_rear = chassis_.flap_height_factor(dh_rear);
 
     Estimate& e = estimate_;
     e.time_ns = time_ns_;
@@ -471,7 +468,7 @@ const Estimate& Engine::estimate() {
     if (closing) {
         missing = tracker_.missing();
     } else {
-        missing.share = missing_open_;
+        missing.share = std::max(missing_open_, tracker_.stays_share());
         missing.area_m2 = missing_open_ * x[kFlapAreaRear];
     }
     const double front_ratio = x[kFlapAreaFront] / std::max(x[kFlapAreaRear], 0.1);
@@ -489,10 +486,10 @@ const Estimate& Engine::estimate() {
                       tracker_.mean_deviation(kSlopeFront, filter) * dh_front;
         area_rear += tracker_.mean_deviation(kAreaRear, filter) +
                      tracker_.mean_deviation(kSlopeRear, filter) * dh_rear;
-        area_front -= factor_front * front_ratio * missing.area_m2;
+        area_front -= front_ratio * missing.area_m2;
         area_rear -= factor_rear * missing.area_m2;
     } else {
-        front[kFlapAreaFront] = -factor_front * missing_open_;
+        front[kFlapAreaFront] = -missing_open_;
         rear[kFlapAreaRear] = -factor_rear * missing_open_;
         area_front += front[kFlapAreaFront] * x[kFlapAreaFront];
         area_rear += rear[kFlapAreaRear] * x[kFlapAreaRear];
@@ -506,7 +503,7 @@ const Estimate& Engine::estimate() {
     const auto sd_of = [&](const ChassisFilter::Filter::Vector& form, double area, double missing_sd) {
         return std::sqrt(filter.variance_of(form) + square(whole * area) + square(missing_sd));
     };
-    e.cla_front_m2 = {area_front, sd_of(front, area_front, factor_front * front_ratio * missing.area_sd_m2)};
+    e.cla_front_m2 = {area_front, sd_of(front, area_front, front_ratio * missing.area_sd_m2)};
     e.cla_rear_m2 = {area_rear, sd_of(rear, area_rear, factor_rear * missing.area_sd_m2)};
     e.cda_m2 = longitudinal_.drag_area(dh_front, dh_rear, factor_rear * missing.share, missing.share_sd, q,
                                        mass_kg() * kGravity + q * (area_front + area_rear));

@@ -11,7 +11,11 @@ constexpr double kOpen = 0.85;        // above: open; a closing counts only from
 constexpr double kMoved = 0.06;       // below the open level by so much: moving, whatever the sensor's noise
 constexpr double kAtRest = 0.02;      // within so much of an end: at the end
 constexpr double kLeftClosed = 0.08;  // above: opening
-constexpr double kLineFrom = 0.30;    // the fall below this is fitted by a straight line to find its end
+constexpr double kFitFrom = 0.30;     // the fall below this is fitted to find its end
+constexpr double kFitNoise = 0.001;   // scatter below which two fits are equally good
+constexpr double kEasesIn = -0.1;     // log of the fits' scatters, eased over straight
+constexpr double kActuatorMemory = 0.5;  // weight of the newest closing: an actuator keeps its manner
+constexpr double kEndAhead_s = 0.04;
 
 }  // namespace
 
@@ -26,14 +30,25 @@ void FlapMotion::command(double time_s, double value) {
 }
 
 void FlapMotion::track_fall(double time_s, double value) {
-    if (value > kLineFrom || value < kAtRest) return;
-    if (line_n_ == 0.0) line_origin_s_ = time_s;
-    const double t = time_s - line_origin_s_;
-    line_n_ += 1.0;
-    line_t_ += t;
-    line_p_ += value;
-    line_tt_ += t * t;
-    line_tp_ += t * value;
+    if (value > kFitFrom || value < kAtRest) return;
+    straight_.add(time_s, value);
+    eased_.add(time_s, std::sqrt(value));
+}
+
+// Called when the flap is within kAtRest of its end: the end itself may be some milliseconds ahead.
+double FlapMotion::end_of_travel_s(double time_s) {
+    const bool straight = straight_.falls();
+    const bool eased = eased_.falls();
+    if (straight && eased) {
+        // The root's scatter, at the middle of the fitted part, is 2 sqrt(p) times smaller than the
+        // position's own.
+        const double eased_scatter = eased_.scatter() * 2.0 * std::sqrt(0.5 * kFitFrom);
+        const double better = std::log((eased_scatter + kFitNoise) / (straight_.scatter() + kFitNoise));
+        eases_in_ += kActuatorMemory * (better - eases_in_);
+    }
+    if (!straight && !eased) return time_s;
+    const double zero = eased && (!straight || eases_in_ < kEasesIn) ? eased_.zero() : straight_.zero();
+    return std::clamp(zero, before_time_s_, time_s + kEndAhead_s);
 }
 
 FlapMotion::Step FlapMotion::position(double time_s, double value) {
@@ -43,7 +58,7 @@ FlapMotion::Step FlapMotion::position(double time_s, double value) {
         phase_ = FlapPhase::closing;
         step.closing_began = true;
         command_fell_ = false;
-        line_n_ = line_t_ = line_p_ = line_tt_ = line_tp_ = 0.0;
+        straight_ = eased_ = LineFit{};
     };
     switch (phase_) {
         case FlapPhase::closed:
@@ -80,18 +95,7 @@ FlapMotion::Step FlapMotion::position(double time_s, double value) {
                 phase_ = FlapPhase::closed;
                 step.shut = true;
                 time_moved_s_ = std::max(last_open_time_s_, time_command_s_);
-                // End of travel: where the straight line through the last part of the fall meets zero.
-                const double spread = line_n_ * line_tt_ - line_t_ * line_t_;
-                time_shut_s_ = time_s;
-                if (line_n_ >= 3.0 && spread > 0.0) {
-                    const double slope = (line_n_ * line_tp_ - line_t_ * line_p_) / spread;
-                    const double zero = (line_t_ - line_p_ / slope) / line_n_;
-                    if (slope < 0.0)
-                        time_shut_s_ = std::clamp(line_origin_s_ + zero, before_time_s_, time_s + 0.02);
-                } else if (before_position_ > value) {
-                    const double share = before_position_ / (before_position_ - std::min(value, 0.0));
-                    time_shut_s_ = before_time_s_ + share * (time_s - before_time_s_);
-                }
+                time_shut_s_ = end_of_travel_s(time_s);
             } else if (have_command_ ? commanded_ > 0.5 && value > 0.5
                                      : value > kOpen && before_position_ < value - kMoved) {
                 phase_ = FlapPhase::open;

@@ -5,6 +5,8 @@
 
 #include <cstdint>
 
+#include "estimator/core/line_fit.hpp"
+
 namespace holdfast::core {
 
 enum class FlapPhase : std::uint8_t { closed, opening, open, closing };
@@ -27,6 +29,7 @@ class FlapMotion {
 
   private:
     void track_fall(double time_s, double value);
+    [[nodiscard]] double end_of_travel_s(double time_s);
 
     FlapPhase phase_ = FlapPhase::closed;
     bool have_command_ = false;
@@ -40,9 +43,11 @@ class FlapMotion {
     double time_shut_s_ = 0.0;
     double before_time_s_ = 0.0;
     double before_position_ = 0.0;
-    // The lower part of the fall, for the straight line that finds the end of travel.
-    double line_n_ = 0.0, line_t_ = 0.0, line_p_ = 0.0, line_tt_ = 0.0, line_tp_ = 0.0;
-    double line_origin_s_ = 0.0;
+    // The last part of the fall: straight where the actuator runs into its stop, as the square of the time
+    // left where it eases into it. The better fit finds the end of travel.
+    LineFit straight_;
+    LineFit eased_;          // of the root of the position
+    double eases_in_ = 0.0;  // negative: the actuator eases in, from the closings so far
 };
 
 }  // namespace holdfast::core

@@ -8,9 +8,11 @@ namespace holdfast::core {
 namespace {
 
 constexpr double kPriorLogMean = 3.6, kPriorLogSd = 0.40;
-constexpr double kScatter = 0.12;    // of usual closings among themselves, in ln
-constexpr double kUsualShare = 0.7;  // expected share of usual closings
-constexpr double kSlowReach = 1.8;   // slow ones lie up to e^1.8 = 6 times above, evenly in ln
+constexpr double kScatter = 0.12;        // of usual closings among themselves, in ln
+constexpr double kUsualShare = 0.7;      // expected share of usual closings
+constexpr double kSlowReach = 1.8;       // slow ones lie up to e^1.8 = 6 times above, evenly in ln
+constexpr double kRegainScatter = 0.03;  // from closing to closing
+constexpr double kRegainDrift = 0.01;
 constexpr double kPriorTau_chords = 14.0;
 constexpr double kPriorTauSpread = 0.9;  // in ln: from 5 to 40 chords within one standard deviation
 
@@ -62,6 +64,18 @@ void Usual::locate() {
     }
     mean /= weight;
     t95_ = {mean, std::sqrt(std::max(second / weight - mean * mean, square(0.02)))};
+}
+
+void Usual::learn_regain(double ratio, double ratio_sd) {
+    const double measured = square(ratio_sd) + square(kRegainScatter);
+    const double before = regain_variance_ + square(kRegainDrift);
+    const double gain = before / (before + measured);
+    regain_ += gain * (ratio - regain_);
+    regain_variance_ = (1.0 - gain) * before;
+}
+
+Regain Usual::regain() const {
+    return {regain_, std::sqrt(regain_variance_ + square(kRegainScatter))};
 }
 
 double Usual::tau_weight(double tau_in_chords) const {

@@ -25,6 +25,10 @@ class Usual {
     void learn(double log_chords, double log_sd, const std::array<double, kStartCount>& start_share,
                const std::array<double, kShapeCount>& shape_share);
 
+    // The flap's size that came back over the one that the opening took away, with its standard deviation.
+    void learn_regain(double ratio, double ratio_sd);
+    [[nodiscard]] Regain regain() const;
+
     // The usual t95 in chords, some closings being slow ones that must not pull it.
     [[nodiscard]] LogNormal t95_chords() const { return t95_; }
     [[nodiscard]] std::size_t count() const { return count_; }
@@ -40,6 +44,8 @@ class Usual {
     std::array<double, kCapacity> log_sd_{};
     std::size_t count_ = 0;
     LogNormal t95_{3.6, 0.40};  // 37 chords: a time constant of 10 to 16 and the part before the flap is shut
+    double regain_ = 1.0;
+    double regain_variance_ = 0.01;  // 10 %
     std::array<double, kStartCount> start_weight_{1, 1, 1, 1, 1, 1, 1, 1, 1, 1};
     std::array<double, kShapeCount> shape_weight_{2.0, 1.0, 1.0};
 };

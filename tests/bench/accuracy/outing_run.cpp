@@ -1,0 +1,118 @@
+// SPDX-License-Identifier: MIT
+#include "tests/bench/accuracy/outing_run.hpp"
+
+#include <algorithm>
+#include <chrono>
+#include <cmath>
+#include <cstdio>
+#include <filesystem>
+#include <fstream>
+#include <memory>
+#include <stdexcept>
+
+#include "estimator/core/engine.hpp"
+#include "estimator/session/bind.hpp"
+#include "estimator/session/car_file.hpp"
+#include "firmware_host/car/outing.hpp"
+
+namespace holdfast::bench {
+namespace {
+
+constexpr double kFrom_mps = 50.0;
+constexpr double kSettled_s = 30.0;  // areas are judged from here on
+constexpr double kMatch_s = 0.15;    // found and true closing lie this near, or are not the same
+constexpr std::int64_t kEvery_ns = 20'000'000;
+
+session::CarFile workshop_car(const sim::Scenario& scenario) {
+    // Unique by scenario and seed: outings run side by side.
+    const auto path = std::filesystem::temp_directory_path() /
+                      ("holdfast-accuracy-" + scenario.name + "-" + std::to_string(scenario.seed) + ".toml");
+    {
+        std::ofstream file(path);
+        file << sim::car_file_text(scenario);
+    }
+    auto car = session::read_car_file(path.string());
+    std::filesystem::remove(path);
+    if (!car)
+        throw std::runtime_error("car file of " + scenario.name + ": " + to_string(car.errors().front()));
+    return *car;
+}
+
+void match(OutingResult& result, const sim::Outing& outing, const std::vector<core::Closure>& found) {
+    std::vector<bool> taken(found.size(), false);
+    for (const sim::TruthClosure& truth : outing.closures()) {
+        ClosurePair pair{truth, outing.scenario().flap.shape, std::nullopt};
+        for (std::size_t i = 0; i < found.size(); ++i) {
+            if (taken[i] || std::abs(found[i].time_closed_s - truth.time_closed_s) > kMatch_s) continue;
+            pair.found = found[i];
+            taken[i] = true;
+            break;
+        }
+        result.closings.push_back(pair);
+    }
+    result.invented = static_cast<std::size_t>(std::count(taken.begin(), taken.end(), false));
+}
+
+}  // namespace
+
+void AreaErrors::add(const core::Quantity& estimate, double truth) {
+    const double error = estimate.value - truth;
+    count += 1.0;
+    error_sum += error;
+    error2_sum += error * error;
+    truth_sum += truth;
+    if (std::abs(error) <= 1.959964 * estimate.sd) inside += 1.0;
+    z2_sum += (error / estimate.sd) * (error / estimate.sd);
+}
+
+double AreaErrors::mean_error_share() const {
+    return count > 0.0 ? error_sum / truth_sum : std::nan("");
+}
+
+OutingResult run_outing(const std::string& name, std::uint64_t seed) {
+    sim::Outing outing(sim::make_scenario(name, seed));
+    const session::CarFile car_file = workshop_car(outing.scenario());
+    auto bound = session::bind_ride_heights(car_file, outing.info());
+    if (!bound) throw std::runtime_error(name + ": " + to_string(bound.errors().front()));
+    auto engine = std::make_unique<core::Engine>(bound->car, core::Settings{});
+
+    OutingResult result;
+    result.scenario = name;
+    result.seed = seed;
+    std::vector<core::Closure> found;
+    std::vector<core::Estimate> estimates;
+    std::int64_t next_ns = 0;
+    Frame frame;
+    std::chrono::steady_clock::duration spent{};
+    while (outing.next(frame)) {
+        const auto before = std::chrono::steady_clock::now();
+        (void)engine->step(frame);
+        if (frame.time_ns >= next_ns) {
+            next_ns += kEvery_ns;
+            estimates.push_back(engine->estimate());
+        }
+        spent += std::chrono::steady_clock::now() - before;
+        while (const auto c = engine->take_closure()) found.push_back(*c);
+        while (const auto a = engine->take_alarm()) result.alarms.push_back(*a);
+        frame = Frame{};
+    }
+    engine->finish();
+    while (const auto c = engine->take_closure()) found.push_back(*c);
+    result.wall_s = std::chrono::duration<double>(spent).count();
+    result.duration_s = static_cast<double>(estimates.back().time_ns) * 1e-9;
+
+    std::size_t at = 0;
+    const auto& truth = outing.truth();
+    for (const core::Estimate& e : estimates) {
+        const double t = static_cast<double>(e.time_ns) * 1e-9;
+        while (at + 1 < truth.size() && truth[at + 1].time_s <= t) ++at;
+        if (truth[at].speed_mps < kFrom_mps || t < kSettled_s) continue;
+        result.cla_front.add(e.cla_front_m2, truth[at].cla_front_m2);
+        result.cla_rear.add(e.cla_rear_m2, truth[at].cla_rear_m2);
+        result.cda.add(e.cda_m2, truth[at].cda_m2);
+    }
+    match(result, outing, found);
+    return result;
+}
+
+}  // namespace holdfast::bench
