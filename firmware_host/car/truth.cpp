@@ -32,11 +32,12 @@ void TruthRecorder::sample(const TruthInstant& now) {
 void TruthRecorder::watch(const TruthInstant& now) {
     if (before_.flap_command && !now.flap_command) begin(now);
     if (open_) {
+        if (!shut_ && now.flap_position == before_.flap_position) moving_since_s_ = now.time_s;  // not yet
         if (!shut_ && now.flap_position <= 0.0) {
             shut_ = true;
             const double chord_s = flap_.chord_m / now.air_speed_mps;
             closure_.time_closed_s = now.time_s;
-            closure_.closing_time_s = now.time_s - closure_.time_command_s;
+            closure_.closing_time_s = now.time_s - moving_since_s_;
             closure_.dead_s = flap_.dead_chords * chord_s;
             closure_.tau_s = now.closing.tau_chords * chord_s;
         }
@@ -54,6 +55,7 @@ void TruthRecorder::begin(const TruthInstant& now) {
     finish();
     open_ = true;
     shut_ = false;
+    moving_since_s_ = now.time_s;
     closure_ = TruthClosure{};
     closure_.number = ++count_;
     closure_.lap = now.lap;

@@ -31,7 +31,7 @@ struct TruthClosure {
     double time_command_s = 0.0;
     double time_closed_s = 0.0;
     double speed_mps = 0.0;       // over ground, at the command
-    double closing_time_s = 0.0;  // time_closed - time_command
+    double closing_time_s = 0.0;  // first movement to shut
     double dead_s = 0.0;
     double tau_s = 0.0;  // time constant at the speed of time_closed
     double t90_s = 0.0;  // after time_closed, of the whole flap

@@ -47,6 +47,7 @@ class TruthRecorder {
     std::vector<TruthClosure> closures_;
     TruthClosure closure_;
     bool open_ = false;  // a closing is being watched
+    double moving_since_s_ = 0.0;
     bool shut_ = false;  // its flap has come shut
     TruthInstant before_;
     int count_ = 0;

@@ -81,7 +81,7 @@ TEST_CASE("a planned closing comes as planned") {
     CHECK(closure.slow);
     CHECK(closure.plateau == 0.8);
     CHECK(std::isnan(closure.t95_s));
-    CHECK(closure.closing_time_s == Approx(0.15 + scenario.flap.actuator_delay_s).margin(0.002));
+    CHECK(closure.closing_time_s == Approx(0.15).margin(0.002));
     CHECK(closure.time_brake_s - closure.time_closed_s == Approx(0.25).margin(0.06));
     CHECK(closure.tau_s ==
           Approx(3.0 * scenario.flap.tau_chords * scenario.flap.chord_m / closure.speed_mps).epsilon(0.03));
