@@ -111,7 +111,8 @@ void ChassisFilter::predict(const ChassisInput& in) {
     double per_across = 0.0;
     wind_factor_ = 1.0 + x[kGust];
     if (!in.air_speed_measured) {
-        const double air_share = 1.0 + (x[kWindAlong] * cosine + x[kWindAcross] * sine) / speed;
+        headwind_mps_ = x[kWindAlong] * cosine + x[kWindAcross] * sine;
+        const double air_share = 1.0 + headwind_mps_ / speed;
         wind_factor_ += air_share * air_share - 1.0;
         per_along = 2.0 * air_share * cosine / speed;
         per_across = 2.0 * air_share * sine / speed;

@@ -82,6 +82,8 @@ class ChassisFilter {
     void wind_is_measured();
     // True over taken dynamic pressure, [wind]; that of the newest predict().
     [[nodiscard]] double wind_factor() const { return wind_factor_; }
+    // Wind against the car as estimated, m/s; 0 where the air speed is measured.
+    [[nodiscard]] double headwind_mps() const { return headwind_mps_; }
     // Forget the motion, keep what was learned of the car: after a gap in the data. Heights against static,
     // m.
     void restart_motion(double dh_front_m, double dh_rear_m, double x_front_m, double x_rear_m);
@@ -99,6 +101,7 @@ class ChassisFilter {
     Filter filter_;
     ChassisStep step_;
     double wind_factor_ = 1.0;
+    double headwind_mps_ = 0.0;
 };
 
 }  // namespace holdfast::core

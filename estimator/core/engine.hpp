@@ -97,6 +97,7 @@ class Engine {
     double slip_force_n_ = 0.0;  // tyre force along x as the slip follows it
     double speed_before_mps_ = 0.0, speed_time_s_ = 0.0;
     double air_density_kgpm3_;
+    double wind_variance_m2ps2_;     // mean square of the wind against the car
     double temperature_k_ = 0.0, pressure_pa_ = 0.0, humidity_ = 0.0;
     double pitot_ratio_ = 1.0;  // measured dynamic pressure over the one of the ground speed
     bool have_pitot_ = false;
