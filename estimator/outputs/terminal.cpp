@@ -1,6 +1,7 @@
 // SPDX-License-Identifier: MIT
 #include "estimator/outputs/terminal.hpp"
 
+#include <algorithm>
 #include <chrono>
 #include <optional>
 #include <ostream>
@@ -87,11 +88,16 @@ std::string sensors_lines(const Tally& tally, const StreamInfo& stream) {
     return text;
 }
 
+// Counters of 0 are left out: what is not there has not happened.
 std::string link_line(const LinkCounters& counters) {
-    if (counters.empty()) return {};
-    std::string text = "  link:";
-    for (const auto& [name, count] : counters) text += " " + name + " " + std::to_string(count);
-    return text + "\n";
+    std::string text;
+    for (const auto& [name, count] : counters) {
+        if (count == 0) continue;
+        std::string words = name;
+        std::replace(words.begin(), words.end(), '_', ' ');
+        text += (text.empty() ? "  link: " : ", ") + words + " " + std::to_string(count);
+    }
+    return text.empty() ? text : text + "\n";
 }
 
 }  // namespace
@@ -112,7 +118,7 @@ std::string alarm_line(const core::Alarm& alarm, const StreamInfo& stream) {
 std::string summary_lines(const Folder& folder, const RunEnd& end) {
     const Tally& tally = folder.tally();
     const StreamInfo& stream = folder.outing().stream;
-    std::string text = "Outing of " + folder.outing().car_name + ": " + fixed(end.duration_s, 1) + " s, " +
+    std::string text = "\nOuting of " + folder.outing().car_name + ": " + fixed(end.duration_s, 1) + " s, " +
                        std::to_string(end.frames) + " frames\n";
     if (!end.complete) text += "  INCOMPLETE: " + end.reason + "\n";
     text += closings_line(tally);

@@ -70,3 +70,10 @@ TEST_CASE("the terminal colours alarms only where asked, and writes a status lin
     CHECK(status.str().find('\r') != std::string::npos);
     CHECK_THAT(plain.str(), Contains("INCOMPLETE: stopped by hand") && Contains(folder.path().string()));
 }
+
+TEST_CASE("the summary's line of the link leaves out what has not happened") {
+    const testing::TempFolder folder;
+    outputs::Folder files(folder.path(), {});
+    files.set_link_counters({{"frames", 400}, {"lost_frames", 3}, {"damaged", 0}});
+    CHECK_THAT(outputs::summary_lines(files, {}), Contains("  link: frames 400, lost frames 3\n"));
+}
