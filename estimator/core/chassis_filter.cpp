@@ -34,7 +34,7 @@ constexpr double kAreaDrift_m2 = 0.004;
 constexpr double kWindDrift_mps = 0.10;
 constexpr double kTurnForgets_rad =
     1.0;                               // an unseen turn by so much leaves 1/e of what was known of the wind
-constexpr double kSlopeDrift_m = 1.5;  // m^2/m: the slope is not the same at every height
+constexpr double kSlopeDrift_m = 0.7;  // m^2/m: the slope is not the same at every height
 constexpr double kLoadOffsetDrift_n = 0.5;
 constexpr double kFlapDrift_m2 = 0.0005;
 

@@ -22,9 +22,9 @@ constexpr double kOpeningLag_chords =
 constexpr double kTransferMemory_s = 0.1;
 constexpr double kTransferUnsure = 0.03;
 constexpr double kPitotSmoothing_s = 0.05;
-constexpr double kWindMemory_s = 120.0;       // over which the strength of the wind against the car is averaged
-constexpr double kWindSd_mps = 2.0;   // wind that areas carry where air speed is not measured
-constexpr double kLoadGainSd = 0.01;  // a load sensor's gain against the weight it was zeroed with
+constexpr double kWindMemory_s = 120.0;  // over which the strength of the wind against the car is averaged
+constexpr double kWindSd_mps = 2.0;      // wind that areas carry where air speed is not measured
+constexpr double kLoadGainSd = 0.01;     // a load sensor's gain against the weight it was zeroed with
 constexpr double kSlipLag_s =
     0.06;  // common practice, no source: tyre relaxation length over speed, wheel inertia
 constexpr double kSlipUnsure = 0.010;  // relative speed error for a force of one weight not yet followed
@@ -301,7 +301,8 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
         const double elapsed = kDriftEvery_s + std::min(time_s - next_drift_s_, kGapRestart_s);
         next_drift_s_ = time_s + kDriftEvery_s;
         const double turn_radps = std::abs(accel_y_mps2_) / std::max(longitudinal_.speed_mps(), 10.0);
-        wind_variance_m2ps2_ += elapsed / kWindMemory_s * (square(chassis_.headwind_mps()) - wind_variance_m2ps2_);
+        wind_variance_m2ps2_ +=
+            elapsed / kWindMemory_s * (square(chassis_.headwind_mps()) - wind_variance_m2ps2_);
         chassis_.drift(elapsed, have_pitot_, have_heading_ ? 0.0 : turn_radps);
         longitudinal_.drift(elapsed, 0.002);
     }
@@ -501,7 +502,8 @@ const Estimate& Engine::estimate() {
     area_front *= wind_factor;
     area_rear *= wind_factor;
     // Wind where the air speed is not measured, and the gain of the load sensors, move an area as a whole.
-    const double wind = have_pitot_ ? 0.0 : 2.0 * std::sqrt(wind_variance_m2ps2_) / std::max(e.speed_mps, 5.0);
+    const double wind =
+        have_pitot_ ? 0.0 : 2.0 * std::sqrt(wind_variance_m2ps2_) / std::max(e.speed_mps, 5.0);
     const double whole = std::hypot(wind, kLoadGainSd);
     const auto sd_of = [&](const ChassisFilter::Filter::Vector& form, double area, double missing_sd) {
         return std::sqrt(filter.variance_of(form) + square(whole * area) + square(missing_sd));

@@ -34,10 +34,21 @@ int main(int argc, char** argv) {
         }
     }
     if (scenarios.empty()) {
-        scenarios = {"open_wheel",           "prototype",         "heavy_closed",     "open_wheel-windy",
-                     "open_wheel-rough",     "open_wheel-noisy",  "prototype-windy",  "open_wheel-full",
-                     "prototype-full",       "heavy_closed-full", "open_wheel-tight", "open_wheel-smooth",
-                     "prototype-noisy-rough"};
+        scenarios = {"open_wheel",
+                     "prototype",
+                     "heavy_closed",
+                     "open_wheel-windy",
+                     "open_wheel-rough",
+                     "open_wheel-noisy",
+                     "prototype-windy",
+                     "open_wheel-full",
+                     "prototype-full",
+                     "heavy_closed-full",
+                     "open_wheel-tight",
+                     "open_wheel-smooth",
+                     "prototype-noisy-rough",
+                     "open_wheel-peaked",
+                     "open_wheel-sick"};
     }
     std::vector<OutingResult> results(scenarios.size() * seeds);
     std::atomic<std::size_t> next{0};
