@@ -131,7 +131,7 @@ void Engine::step_longitudinal(const Frame& frame, std::uint64_t admitted, doubl
     if (has(admitted, Channel::accel_x)) {
         have_accel_x_ = true;
         accel_x_mps2_ = frame.get(Channel::accel_x);
-        accel_x_sum_ += accel_x_mps2_ - longitudinal_.accel_offset_mps2();
+        accel_x_sum_ += accel_x_mps2_;
         accel_x_count_ += 1.0;
     }
     const double accel_noise = intake_.noise_sd(Channel::accel_x);
@@ -190,7 +190,7 @@ void Engine::step_longitudinal(const Frame& frame, std::uint64_t admitted, doubl
             !tracker_.bank().running()) {
             LongitudinalFilter::DragInput in;
             in.drive_force_n = drive_force_n_;
-            in.accel_x_mps2 = accel_x_sum_ / accel_x_count_ + longitudinal_.accel_offset_mps2();
+            in.accel_x_mps2 = accel_x_sum_ / accel_x_count_;
             in.dynamic_pressure_pa = dynamic_pressure_pa();
             in.dh_front_m = front_heights_.smooth_dh_m();
             in.dh_rear_m = rear_heights_.smooth_dh_m();
@@ -270,7 +270,7 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
     in.air_speed_measured = have_pitot_;
     in.dh_front_m = front_heights_.smooth_dh_m();
     in.dh_rear_m = rear_heights_.smooth_dh_m();
-    in.accel_x_mps2 = accel_x_mps2_ - longitudinal_.accel_offset_mps2();
+    in.accel_x_mps2 = longitudinal_.true_accel_mps2(accel_x_mps2_);
     in.tyre_force_x_n = tyre_force_x_n();
     in.fuel_burnt_kg = car_.mass_kg.value - mass_kg();
     in.road_front_m2ps = front_road_.density_m2ps(longitudinal_.speed_mps());

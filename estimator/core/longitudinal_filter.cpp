@@ -13,7 +13,8 @@ constexpr double kDragFlapPrior_m2 = 0.20, kDragFlapPriorSd_m2 = 0.15;
 constexpr double kDragSlopePriorSd_m = 4.0;
 constexpr double kSlipPrior = 0.005, kSlipPriorSd = 0.004;
 constexpr double kAccelOffsetSd_mps2 = 0.10;
-constexpr double kDriveGainSd = 0.01;
+constexpr double kAccelGainSd = 0.007;
+constexpr double kDriveGainSd = 0.025;
 constexpr double kDragDrift_m2 = 0.002;  // after one second
 constexpr double kAccelOffsetDrift_mps2 = 0.001;
 
@@ -31,6 +32,7 @@ LongitudinalFilter::LongitudinalFilter(const Car& car) : rolling_resistance_(car
     variance[kDragSlopeFront] = variance[kDragSlopeRear] = square(kDragSlopePriorSd_m);
     variance[kSlipDrive] = variance[kSlipBrake] = square(kSlipPriorSd);
     variance[kAccelOffset] = square(kAccelOffsetSd_mps2);
+    variance[kAccelGain] = square(kAccelGainSd);
     variance[kDriveGain] = square(kDriveGainSd);
     filter_.set_diagonal(variance);
     filter_.x[kDragArea] = kDragAreaPrior_m2;
@@ -39,10 +41,11 @@ LongitudinalFilter::LongitudinalFilter(const Car& car) : rolling_resistance_(car
 }
 
 void LongitudinalFilter::predict(double dt_s, double accel_x_mps2, double noise_density) {
-    filter_.x[kSpeed] += dt_s * (accel_x_mps2 - filter_.x[kAccelOffset]);
+    filter_.x[kSpeed] += dt_s * true_accel_mps2(accel_x_mps2);
     for (std::size_t j = kAccelOffset; j < kLongitudinalCount; ++j) {
         auto& column = filter_.column(j);
         column[kSpeed] -= dt_s * column[kAccelOffset];
+        if (j >= kAccelGain) column[kSpeed] -= dt_s * accel_x_mps2 * column[kAccelGain];
     }
     filter_.diagonal(kSpeed) +=
         noise_density * dt_s;  // speed is the first state: its own noise is its own diagonal
@@ -75,6 +78,7 @@ LongitudinalFilter::Filter::Vector LongitudinalFilter::J_drag_state(const DragIn
     h[kDragSlopeFront] = in.dynamic_pressure_pa * in.dh_front_m;
     h[kDragSlopeRear] = in.dynamic_pressure_pa * in.dh_rear_m;
     h[kAccelOffset] = -in.mass_kg;
+    h[kAccelGain] = -in.mass_kg * in.accel_x_mps2;
     h[kDriveGain] = in.drive_force_n;
     return h;
 }

@@ -18,6 +18,7 @@ enum LongitudinalState : std::size_t {
     kSlipDrive,       // relative excess of measured speed for a drive force of one weight
     kSlipBrake,       // relative lack of measured speed for a brake force of one weight
     kAccelOffset,     // m/s^2, measured minus true
+    kAccelGain,       // relative error of the accelerometer's scale
     kDriveGain,       // relative error of the drive force
     kLongitudinalCount,
 };
@@ -35,7 +36,7 @@ class LongitudinalFilter {
 
     struct DragInput {
         double drive_force_n = 0.0;
-        double accel_x_mps2 = 0.0;  // mean over the interval of the measurement
+        double accel_x_mps2 = 0.0;  // as measured, mean over the interval of the drive force
         double dynamic_pressure_pa = 0.0;
         double dh_front_m = 0.0;
         double dh_rear_m = 0.0;
@@ -52,7 +53,10 @@ class LongitudinalFilter {
     Innovation<double> update_drag(const DragInput& input, double gate);
 
     [[nodiscard]] double speed_mps() const { return filter_.x[kSpeed]; }
-    [[nodiscard]] double accel_offset_mps2() const { return filter_.x[kAccelOffset]; }
+    // The measured acceleration with the accelerometer's learned errors taken out.
+    [[nodiscard]] double true_accel_mps2(double measured_mps2) const {
+        return (measured_mps2 - filter_.x[kAccelOffset]) * (1.0 - filter_.x[kAccelGain]);
+    }
     // Drag area and its standard uncertainty now, rolling resistance's share included.
     [[nodiscard]] Quantity drag_area(double dh_front_m, double dh_rear_m, double missing, double missing_sd,
                                      double dynamic_pressure_pa, double vertical_force_n) const;
