@@ -15,6 +15,8 @@ constexpr double kBrakesWithin_s = 3.0;  // of the flap being shut
 constexpr double kWeighEvery_s = 0.020;
 constexpr double kPartProbability = 0.5;  // that a part stays, for the record to say so
 constexpr std::size_t kUsualKnownAfter = 3;
+constexpr double kFlapPicture_s = 0.004;  // spacing of the flap's points in the picture
+constexpr double kNegligibleWeight = 1e-5;
 constexpr double kNaN = std::numeric_limits<double>::quiet_NaN();
 
 double square(double v) {
@@ -40,6 +42,8 @@ void ClosureTracker::begin(const AeroNow& now, double time_command_s, double cho
     usable_ = now.reliable;
     chord_m_ = chord_m;
     next_weigh_s_ = now.time_s;
+    posterior_.count = 0;
+    flap_count_ = 0;
     missing_ = {filter.x[kFlapAreaRear], 0.0, 1.0, 0.0};
     bank_.begin(filter, chord_m / std::max(now.speed_mps, 5.0), usual_.regain(), now.factor_rear);
 }
@@ -236,6 +240,7 @@ void ClosureTracker::flap_opens(ChassisFilter::Filter& filter) {
 void ClosureTracker::tick(const AeroNow& now, double colour, ChassisFilter::Filter& filter) {
     colour_ = colour;
     if (!waiting_) return;
+    if (bank_.running()) known_until_s_ = now.time_s;
     if (!now.reliable) usable_ = false;
     if (bank_.running()) {
         if (!shut_ && now.time_s > closure_.time_command_s + kGiveUp_s) {
@@ -282,6 +287,49 @@ void ClosureTracker::publish() {
                              (closure_.t95_high_s - closure_.t95_low_s) / (2.0 * 1.959964)};
     }
     closure_out_ = closure_;
+}
+
+void ClosureTracker::flap_moved(double time_s, double position) {
+    if (!waiting_ || flap_count_ == Regrowth::kFlapPoints) return;
+    if (flap_count_ > 0 && time_s - flap_time_s_[flap_count_ - 1] < kFlapPicture_s) return;
+    flap_time_s_[flap_count_] = time_s;
+    flap_position_[flap_count_++] = position;
+}
+
+bool ClosureTracker::regrowth(Regrowth& out) {
+    if (count_ == 0) return false;
+    if (bank_.running()) refine(bank_, weights_, posterior_);
+    if (posterior_.count == 0) return false;
+    out = Regrowth{};
+    out.closure = closure_.number;
+    out.final = !bank_.running();
+    out.shut = shut_;
+    out.time_command_s = closure_.time_command_s;
+    out.time_shut_s = shut_ ? closure_.time_closed_s : closure_.time_command_s;
+    out.chord_time_s = chord_m_ / std::max(closure_.speed_mps, 5.0);
+    out.known_until_s = known_until_s_ - out.time_shut_s;
+    for (std::size_t i = 0; i < Regrowth::kPoints; ++i) {
+        const double time_s = out.time_shut_s + Regrowth::time_s(i);
+        sorted_.count = 0;
+        for (std::size_t k = 0; k < posterior_.count; ++k) {
+            const PosteriorPoint& p = posterior_.points[k];
+            if (p.weight < kNegligibleWeight) continue;
+            const double missing = p.share_missing(time_s);
+            const double stays = p.stay_m2 / std::max(p.flap_m2, 0.05);
+            sorted_.value[sorted_.count] = 1.0 - missing - stays * (1.0 - missing);
+            sorted_.weight[sorted_.count++] = p.weight;
+        }
+        sorted_.sort();
+        out.share[i] = sorted_.quantile(0.5);
+        out.low[i] = sorted_.quantile(0.025);
+        out.high[i] = sorted_.quantile(0.975);
+    }
+    out.flap_count = flap_count_;
+    for (std::size_t i = 0; i < flap_count_; ++i) {
+        out.flap_time_s[i] = flap_time_s_[i] - out.time_shut_s;
+        out.flap_position[i] = flap_position_[i];
+    }
+    return true;
 }
 
 std::optional<Closure> ClosureTracker::take_closure() {

@@ -3,11 +3,13 @@
 // writes the Closure when nothing more can come.
 #pragma once
 
+#include <array>
 #include <cstdint>
 #include <optional>
 
 #include "estimator/core/bank.hpp"
 #include "estimator/core/posterior.hpp"
+#include "estimator/core/regrowth.hpp"
 #include "estimator/core/results.hpp"
 #include "estimator/core/settings.hpp"
 #include "estimator/core/usual.hpp"
@@ -60,6 +62,11 @@ class ClosureTracker {
     // A new opening takes the rest of the flow away and gives the next closing its chance.
     void flap_opens(ChassisFilter::Filter& filter);
 
+    // Where the flap is, for the picture of the closing.
+    void flap_moved(double time_s, double position);
+    // The newest closing's curve; false where there was none.
+    [[nodiscard]] bool regrowth(Regrowth& out);
+
     [[nodiscard]] std::optional<Closure> take_closure();
     [[nodiscard]] std::optional<Alarm> take_alarm();
 
@@ -87,6 +94,10 @@ class ClosureTracker {
     double stays_area_m2_ = 0.0;
     double colour_ = 1.0;
     double chord_m_ = 0.0;
+    double known_until_s_ = 0.0;
+    std::array<double, Regrowth::kFlapPoints> flap_time_s_{};
+    std::array<double, Regrowth::kFlapPoints> flap_position_{};
+    std::size_t flap_count_ = 0;
     AeroNow at_brake_;
     Closure closure_;
     std::uint32_t count_ = 0;

@@ -227,6 +227,7 @@ void Engine::step_flap(const Frame& frame, std::uint64_t admitted) {
     if (has(admitted, Channel::flap_command)) flap_.command(time_s, frame.get(Channel::flap_command));
     if (!has(admitted, Channel::flap_position)) return;
     const FlapMotion::Step step = flap_.position(time_s, frame.get(Channel::flap_position));
+    tracker_.flap_moved(time_s, frame.get(Channel::flap_position));
     const double colour = std::max(front_road_.colour(), rear_road_.colour());
     if (step.closing_began) {
         tracker_.end(aero_now(time_s), colour, chassis_.filter(), false);

@@ -49,6 +49,9 @@ class Engine {
     // Closings or alarms lost because nobody took them; 0 in a sound program.
     [[nodiscard]] std::uint64_t overrun() const { return closures_.overrun() + alarms_.overrun(); }
 
+    // The newest closing as a curve; false where there was none. Costs some milliseconds: for pictures.
+    [[nodiscard]] bool regrowth(Regrowth& out) { return tracker_.regrowth(out); }
+
     // For those who look closer: tests and benchmarks.
     [[nodiscard]] const ChassisFilter& chassis() const { return chassis_; }
     [[nodiscard]] const LongitudinalFilter& longitudinal() const { return longitudinal_; }
@@ -97,7 +100,7 @@ class Engine {
     double slip_force_n_ = 0.0;  // tyre force along x as the slip follows it
     double speed_before_mps_ = 0.0, speed_time_s_ = 0.0;
     double air_density_kgpm3_;
-    double wind_variance_m2ps2_;     // mean square of the wind against the car
+    double wind_variance_m2ps2_;  // mean square of the wind against the car
     double temperature_k_ = 0.0, pressure_pa_ = 0.0, humidity_ = 0.0;
     double pitot_ratio_ = 1.0;  // measured dynamic pressure over the one of the ground speed
     bool have_pitot_ = false;
