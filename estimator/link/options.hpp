@@ -9,15 +9,18 @@ namespace holdfast::link {
 // messages are large and waiting costs nothing.
 inline constexpr int kSendQueueDropping = 4000;
 inline constexpr int kSendQueueWaiting = 100;
-// Queue of a subscriber, in messages: beyond it the sender's queue fills, where the choice between dropping
-// and waiting is made.
-inline constexpr int kReceiveQueue = 1000;
+// Queue of a subscriber, in messages. Short, since beyond it the sender's queue fills, where the choice
+// between dropping and waiting is made; and since a socket whose queue is full reads nothing, heartbeats
+// neither, until half is taken.
+inline constexpr int kReceiveQueue = 64;
 
 // A peer that says nothing is asked this often, and given up after the time-out: a car that is switched off
-// or drives out of range is noticed in seconds, not after TCP's quarter of an hour. Times out far above a
-// radio's worst delay.
-inline constexpr int kHeartbeatInterval_ms = 1000;
-inline constexpr int kHeartbeatTimeout_ms = 4000;
+// or drives out of range is dialled again in seconds, not after TCP's quarter of an hour. (That data have
+// stopped is noticed earlier, by their absence.) Each end judges for itself and imposes no time to live on
+// the other. A sender that waits gives a subscriber that stands still as long as its patience for a full
+// queue.
+inline constexpr int kHeartbeatInterval_ms = 2000;
+inline constexpr int kHeartbeatTimeout_ms = 10'000;
 
 // A node that starts again is found at once, and one that stays away is not hammered: the wait doubles up to
 // the most.

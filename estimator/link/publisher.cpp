@@ -24,8 +24,8 @@ struct Publisher::Socket {
         socket.set(zmq::sockopt::sndhwm, waits ? kSendQueueWaiting : kSendQueueDropping);
         socket.set(zmq::sockopt::linger, waits ? kLingerWaiting_ms : kLingerDropping_ms);
         socket.set(zmq::sockopt::heartbeat_ivl, kHeartbeatInterval_ms);
-        socket.set(zmq::sockopt::heartbeat_timeout, kHeartbeatTimeout_ms);
-        socket.set(zmq::sockopt::heartbeat_ttl, kHeartbeatTimeout_ms);
+        socket.set(zmq::sockopt::heartbeat_timeout,
+                   waits ? static_cast<int>(options.patience.count()) : kHeartbeatTimeout_ms);
         socket.set(zmq::sockopt::handshake_ivl, kHandshakeTimeout_ms);
         socket.set(zmq::sockopt::maxmsgsize, std::int64_t{kMaxSubscriptionBytes});
         // Every subscription and its end is told, not only the first and the last, so that they can be

@@ -36,7 +36,6 @@ struct Subscriber::Socket {
         socket.set(zmq::sockopt::maxmsgsize, static_cast<std::int64_t>(kMaxWireBytes));
         socket.set(zmq::sockopt::heartbeat_ivl, kHeartbeatInterval_ms);
         socket.set(zmq::sockopt::heartbeat_timeout, kHeartbeatTimeout_ms);
-        socket.set(zmq::sockopt::heartbeat_ttl, kHeartbeatTimeout_ms);
         socket.set(zmq::sockopt::reconnect_ivl, kReconnectLeast_ms);
         socket.set(zmq::sockopt::reconnect_ivl_max, kReconnectMost_ms);
         socket.set(zmq::sockopt::connect_timeout, kConnectTimeout_ms);

@@ -55,7 +55,8 @@ class Outlets {
             link::Publisher::bind({.endpoint = options.link.bind, .when_full = options.link.when_full});
         if (!bound) throw std::runtime_error(bound.error().message);
         uplink_.emplace(std::move(*bound), info);
-        tell_note("driving, " + info.origin + ", on " + uplink_->endpoint());
+        tell_note("driving, " + info.origin + ", on " + uplink_->endpoint() +
+                  when_it_begins(options.link.wait));
     }
 
     [[nodiscard]] bool wait_for_subscribers(std::size_t count) {

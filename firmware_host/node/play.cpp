@@ -78,7 +78,7 @@ int play(const PlayOptions& options) {
     }
     session::note_interrupts();
     Uplink uplink(std::move(*publisher), log->info());
-    tell_note("streaming " + options.log + " on " + uplink.endpoint());
+    tell_note("streaming " + options.log + " on " + uplink.endpoint() + when_it_begins(options.link.wait));
     return stream_log(*log, uplink, options);
 }
 

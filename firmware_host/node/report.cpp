@@ -13,6 +13,11 @@ void tell_note(const std::string& message) {
     std::cerr << message << '\n';
 }
 
+std::string when_it_begins(std::size_t subscribers) {
+    if (subscribers == 0) return {};
+    return " once " + std::to_string(subscribers) + (subscribers == 1 ? " has" : " have") + " subscribed";
+}
+
 std::string sending_report(const Uplink& uplink, const Pacer& pacer) {
     std::string report = "sent " + std::to_string(uplink.rows()) + " frames in " +
                          std::to_string(uplink.messages()) + " messages";

@@ -59,7 +59,7 @@ TEST_CASE("Ctrl-C ends a stream with its end marker") {
     REQUIRE(node.says(" on tcp://127.0.0.1:"));
     const std::string said = node.err();
     const std::size_t begin = said.find("tcp://");
-    link::FrameReceiver in = receiver(said.substr(begin, said.find('\n', begin) - begin));
+    link::FrameReceiver in = receiver(said.substr(begin, said.find_first_of(" \n", begin) - begin));
     REQUIRE(in.receive(kLongEnough).kind == link::Arrival::Kind::stream);
     node.send(SIGINT);
     link::Arrival arrival;
