@@ -96,15 +96,13 @@ FlapMotion::Step FlapMotion::position(double time_s, double value) {
                 step.shut = true;
                 time_moved_s_ = std::max(last_open_time_s_, time_command_s_);
                 time_shut_s_ = end_of_travel_s(time_s);
-            } else if (have_command_ ? commanded_ > 0.5 && value > 0.5
-                                     : value > kOpen && before_position_ < value - kMoved) {
+            } else if (have_command_ ? commanded_ > 0.5 && value > 0.5 : value > open_level_ - 0.5 * kMoved) {
                 phase_ = FlapPhase::open;
                 step.reopened = true;
             }
             break;
     }
     before_time_s_ = time_s;
-    before_position_ = value;
     return step;
 }
 

@@ -42,7 +42,6 @@ class FlapMotion {
     double time_moved_s_ = 0.0;
     double time_shut_s_ = 0.0;
     double before_time_s_ = 0.0;
-    double before_position_ = 0.0;
     // The last part of the fall: straight where the actuator runs into its stop, as the square of the time
     // left where it eases into it. The better fit finds the end of travel.
     LineFit straight_;
