@@ -2,6 +2,7 @@
 // Plain matrices in long double, written out by definition: what the factored forms are held against.
 #pragma once
 
+#include <algorithm>
 #include <array>
 #include <cmath>
 #include <cstddef>
@@ -77,8 +78,8 @@ template <std::size_t N>
         for (std::size_t j = 0; j < N; ++j) {
             const long double scale = std::sqrt(expected[i][i] * expected[j][j]);
             const long double off = std::abs(found[i][j] - expected[i][j]);
-            // A state that is known exactly has no scale of its own: nothing may stand in its row.
-            const long double relative = scale > 0.0L ? off / scale : off;
+            // A state that is known exactly has no scale of its own: roundings of nothing are nothing.
+            const long double relative = off / std::max(scale, 1e-18L);
             if (!(relative <= worst)) worst = relative;  // not-a-number counts as worst
         }
     }
