@@ -2,8 +2,8 @@
 // carnode: the on-car node, built for a PC. Reads the words of the command line; firmware_host/node does the
 // work.
 #include <CLI/CLI.hpp>
+#include <cstdio>
 #include <exception>
-#include <iostream>
 #include <map>
 
 #include "firmware_host/node/drive.hpp"
@@ -44,9 +44,7 @@ CLI::Option* add_link(CLI::App& sub, LinkOptions& link) {
     return bind;
 }
 
-}  // namespace
-
-int main(int argc, char** argv) {
+int run(int argc, char** argv) {
     CLI::App app("Streams a racing car's samples: of a log, or of a simulated car.", "carnode");
     app.set_version_flag("--version", "carnode " HOLDFAST_VERSION, "Show the version and leave");
     app.require_subcommand(1);
@@ -87,10 +85,16 @@ int main(int argc, char** argv) {
         return app.exit(error) == 0 ? holdfast::kDone : holdfast::kWrongUse;
     }
 
+    return play_words->parsed() ? play(playing) : drive(driving);
+}
+
+}  // namespace
+
+int main(int argc, char** argv) {
     try {
-        return play_words->parsed() ? play(playing) : drive(driving);
+        return run(argc, argv);
     } catch (const std::exception& error) {
-        std::cerr << "error: " << error.what() << '\n';
+        std::fprintf(stderr, "error: %s\n", error.what());
     }
     return holdfast::kFailed;
 }
