@@ -59,11 +59,17 @@ std::optional<AxleHeights::Height> AxleHeights::take(const Frame& frame, std::ui
         out.noise_gain = 1.0 / n;
     }
     const double time_s = frame.time_s();
+    last_sample_s_ = time_s;
     const double share = started_ ? 1.0 - std::exp(-(time_s - smooth_time_s_) / kSmoothing_s) : 1.0;
     smooth_dh_m_ += share * (out.dh_m - smooth_dh_m_);
     smooth_time_s_ = time_s;
     started_ = true;
     return out;
+}
+
+void AxleHeights::stand_in(double dh_m, double time_s) {
+    smooth_dh_m_ = dh_m;
+    smooth_time_s_ = stood_in_s_ = time_s;
 }
 
 double AxleHeights::noise_sd_m(const Intake& intake) const {

@@ -33,6 +33,11 @@ class AxleHeights {
     [[nodiscard]] std::size_t count() const { return count_; }
     [[nodiscard]] const RideHeightSensor& sensor(std::size_t i) const { return sensor_[i]; }
     void restart() { started_ = false; }
+    // Time since the last sensor's sample, s.
+    [[nodiscard]] double age_s(double time_s) const { return time_s - last_sample_s_; }
+    // A height from elsewhere while the sensors are lost.
+    void stand_in(double dh_m, double time_s);
+    [[nodiscard]] double stood_in_until_s() const { return stood_in_s_; }
 
   private:
     std::array<RideHeightSensor, kMaxRideHeights> sensor_{};
@@ -43,6 +48,8 @@ class AxleHeights {
     double roll_rad_ = 0.0;
     double smooth_dh_m_ = 0.0;
     double smooth_time_s_ = 0.0;
+    double last_sample_s_ = 0.0;
+    double stood_in_s_ = 0.0;
 };
 
 }  // namespace holdfast::core

@@ -6,39 +6,24 @@
 namespace holdfast::core {
 namespace {
 
-constexpr double kSilentIntervals = 4.0;  // a corner silent for longer is taken from the other one
+constexpr double kSilentIntervals = 4.0;  // a corner silent for longer is taken from elsewhere
 constexpr double kSilentLeast_s = 0.010;
-constexpr double kTransferSd_n = 250.0;    // how well one corner tells the other's load
-constexpr double kTransferMemory_s = 0.2;  // over which that error keeps its sign
-constexpr double kForget = 0.9999;
+constexpr double kErrorMemory_s = 0.2;  // over which a substitute's error keeps its sign
 constexpr double kNoiseUnknown_n = 40.0;
-// What the forces on the sprung mass have beside the measured loads (links, exhaust, steering): white, common
-// practice.
+// What the forces on the sprung mass have beside the measured loads (links, exhaust, steering) and what the
+// model leaves out: white, found on simulated cars by the consistency of the innovations.
 constexpr double kModelDensity_n2s = 200.0;
+
+double coloured_density(double error) {
+    return 2.0 * error * error * kErrorMemory_s;
+}
 
 }  // namespace
 
-void AxleLoads::learn_transfer(double difference_n, double accel_y_mps2) {
-    const double a = accel_y_mps2;
-    const double pg = p_gg_ * a + p_go_;
-    const double po = p_go_ * a + p_oo_;
-    const double s = 1e4 + pg * a + po;  // 100 N of scatter
-    const double e = difference_n - gain_kg_ * a - offset_n_;
-    gain_kg_ += pg / s * e;
-    offset_n_ += po / s * e;
-    p_gg_ = std::min((p_gg_ - pg * pg / s) / kForget, 1e6);
-    p_go_ = (p_go_ - pg * po / s) / kForget;
-    p_oo_ = std::min((p_oo_ - po * po / s) / kForget, 1e6);
-}
-
 AxleLoads::Load AxleLoads::take(const Frame& frame, std::uint64_t admitted, const Intake& intake,
-                                double accel_y_mps2) {
-    const bool new_left = ((admitted >> index(left_)) & 1U) != 0;
-    const bool new_right = ((admitted >> index(right_)) & 1U) != 0;
-    if (new_left) left_n_ = frame.get(left_);
-    if (new_right) right_n_ = frame.get(right_);
-    if (new_left && new_right) learn_transfer(left_n_ - right_n_, accel_y_mps2);
-
+                                const AxleWatch& watch, const Surroundings& around) {
+    if (((admitted >> index(left_)) & 1U) != 0) left_n_ = frame.get(left_);
+    if (((admitted >> index(right_)) & 1U) != 0) right_n_ = frame.get(right_);
     const auto usable = [&](Channel c) {
         const ChannelHealth& h = intake.health()[index(c)];
         return h.trust == Trust::good &&
@@ -50,21 +35,20 @@ AxleLoads::Load AxleLoads::take(const Frame& frame, std::uint64_t admitted, cons
     };
     const bool left = usable(left_);
     const bool right = usable(right_);
-    const double difference = offset_n_ + gain_kg_ * accel_y_mps2;
-    constexpr double kSubstitute = 2.0 * kTransferSd_n * kTransferSd_n * kTransferMemory_s;
+    const double difference = watch.side_difference_n(around.accel_y_mps2);
     Load out;
-    out.known = left || right;
+    out.known = left || right || around.dh_known;
     if (left && right) {
         out.sum_n = left_n_ + right_n_;
         out.noise_density_n2s = density(left_) + density(right_) + kModelDensity_n2s;
-    } else if (left) {
-        out.sum_n = 2.0 * left_n_ - difference;
-        out.noise_density_n2s = 4.0 * density(left_) + kSubstitute;
-    } else if (right) {
-        out.sum_n = 2.0 * right_n_ + difference;
-        out.noise_density_n2s = 4.0 * density(right_) + kSubstitute;
+    } else if (left || right) {
+        out.sum_n = left ? 2.0 * left_n_ - difference : 2.0 * right_n_ + difference;
+        out.noise_density_n2s =
+            4.0 * density(left ? left_ : right_) + kModelDensity_n2s + coloured_density(watch.side_error_n());
     } else {
-        out.sum_n = left_n_ + right_n_;
+        out.sum_n =
+            around.dh_known ? watch.load_from_height_n(around.dh_m, around.speed_mps) : left_n_ + right_n_;
+        out.noise_density_n2s = kModelDensity_n2s + coloured_density(watch.load_error_n());
     }
     return out;
 }

@@ -1,11 +1,12 @@
 // SPDX-License-Identifier: MIT
 // The two suspension loads of one axle as one force. Where a corner's sensor is silent or distrusted, its
-// load is taken from the other corner and the lateral transfer learned so far, with the uncertainty that this
-// costs.
+// load is taken from the other corner and the lateral transfer that the watch has learned; where both are,
+// from the ride height; each with the uncertainty that this costs.
 #pragma once
 
 #include <cstdint>
 
+#include "estimator/core/axle_watch.hpp"
 #include "estimator/core/intake.hpp"
 #include "proto/vocabulary/frame.hpp"
 
@@ -18,20 +19,21 @@ class AxleLoads {
     struct Load {
         double sum_n = 0.0;
         double noise_density_n2s = 0.0;  // two-sided spectral density of the sum's noise
-        bool known = false;              // false: both corners are missing
+        bool known = false;              // from at least one load sensor or, dh_known, from the ride height
+    };
+    struct Surroundings {
+        double accel_y_mps2 = 0.0;
+        double speed_mps = 0.0;
+        double dh_m = 0.0;  // ride height of the axle against static
+        bool dh_known = false;
     };
     // Newest load of the axle; samples admitted in this frame are taken in first.
     [[nodiscard]] Load take(const Frame& frame, std::uint64_t admitted, const Intake& intake,
-                            double accel_y_mps2);
+                            const AxleWatch& watch, const Surroundings& around);
 
   private:
-    void learn_transfer(double difference_n, double accel_y_mps2);
-
     Channel left_, right_;
     double left_n_ = 0.0, right_n_ = 0.0;
-    // (left - right) = offset + gain a_y, by recursive least squares with forgetting.
-    double gain_kg_ = 0.0, offset_n_ = 0.0;
-    double p_gg_ = 1e6, p_go_ = 0.0, p_oo_ = 1e6;
 };
 
 }  // namespace holdfast::core

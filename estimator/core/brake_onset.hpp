@@ -15,6 +15,9 @@ class BrakeOnset {
     [[nodiscard]] std::optional<double> acceleration(double time_s, double accel_mps2,
                                                      double accel_without_brakes_mps2);
 
+    // The pressure is not to be had any more: acceleration takes over until it comes again.
+    void pressure_lost() { have_pressure_ = false; }
+
     [[nodiscard]] bool braking() const { return braking_; }
 
   private:

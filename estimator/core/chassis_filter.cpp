@@ -258,6 +258,12 @@ void ChassisFilter::wind_is_measured() {
     filter_.x[kGust] = 0.0;
 }
 
+void ChassisFilter::wind_is_unknown() {
+    for (const ChassisState p : {kWindAlong, kWindAcross}) filter_.reset_state(p, square(kWindPriorSd_mps));
+    filter_.reset_state(kGust, square(kGustSd));
+    filter_.x[kGust] = 0.0;
+}
+
 void ChassisFilter::restart_motion(double dh_front_m, double dh_rear_m, double x_front_m, double x_rear_m) {
     // Heave and pitch from the heights alone, road taken as level; its uncertainty is the whole road's.
     const double slope = (dh_rear_m - dh_front_m) / (x_front_m - x_rear_m);  // nose down positive

@@ -80,6 +80,8 @@ class ChassisFilter {
 
     // The air speed is measured after all: the wind states go, the gust state becomes the pitot's gain error.
     void wind_is_measured();
+    // The air speed is not measured any more: wind and gusts as before the first sample.
+    void wind_is_unknown();
     // True over taken dynamic pressure, [wind]; that of the newest predict().
     [[nodiscard]] double wind_factor() const { return wind_factor_; }
     // Wind against the car as estimated, m/s; 0 where the air speed is measured.

@@ -14,8 +14,12 @@ namespace {
 
 constexpr double kGravity = 9.80665;    // m/s^2
 constexpr double kGapRestart_s = 0.05;  // a pause that the motion of the car does not survive
+constexpr double kUnseenFor_s = 3.0;    // brakes within so much of a command belong to it
 constexpr double kDriftEvery_s = 0.02;
-constexpr double kGate = 5.0;          // standard deviations of an innovation
+constexpr double kHeightLost_s = 0.06;
+constexpr double kStandInEvery_s = 0.02;
+constexpr double kStandInSd_m = 0.006;  // some 2 mm that keep their sign over several samples
+constexpr double kGate = 5.0;           // standard deviations of an innovation
 constexpr double kGateClosing = 12.0;  // while a bank runs: candidates far from the base path are to be heard
 constexpr double kOpeningLag_chords =
     5.0;  // flow leaves the opening flap so fast; common practice, no source
@@ -28,6 +32,8 @@ constexpr double kLoadGainSd = 0.01;     // a load sensor's gain against the wei
 constexpr double kSlipLag_s =
     0.06;  // common practice, no source: tyre relaxation length over speed, wheel inertia
 constexpr double kSlipUnsure = 0.010;  // relative speed error for a force of one weight not yet followed
+constexpr double kSpeedGatedFor_s = 1.0;
+constexpr double kMostAccel_mps2 = 30.0;  // how far off the speed may be after a pause
 constexpr double kDragGate = 4.0;
 constexpr double kDragFrom_mps = 30.0;  // below, drag drowns in the other forces
 constexpr double kSlowFrom_mps = 20.0;
@@ -49,6 +55,8 @@ Engine::Engine(const Car& car, const Settings& settings)
       chassis_(car),
       front_heights_(car, false),
       rear_heights_(car, true),
+      front_watch_(car, false),
+      rear_watch_(car, true),
       tracker_(settings),
       air_density_kgpm3_(kStandardAirDensity_kgpm3),
       wind_variance_m2ps2_(square(kWindSd_mps)),
@@ -84,9 +92,11 @@ StepResult Engine::step(const Frame& frame) {
     note_slow_channels(frame, admitted);
     if (!started_) {
         started_ = true;
+        start_s_ = time_s;
         next_drift_s_ = time_s + kDriftEvery_s;
         if (has(admitted, Channel::speed)) longitudinal_.restart(frame.get(Channel::speed));
     } else if (dt_s > kGapRestart_s) {
+        longitudinal_.filter().add_noise(kSpeed, square(kMostAccel_mps2 * dt_s));
         restart_motion(time_s);
     }
     const double step_s = std::min(dt_s, kGapRestart_s);
@@ -98,8 +108,8 @@ StepResult Engine::step(const Frame& frame) {
     find_brakes(frame, admitted);
     step_flap(frame, admitted);
     step_chassis(frame, admitted, step_s);
+    watch_sensors(frame);
     tracker_.tick(aero_now(time_s), std::max(front_road_.colour(), rear_road_.colour()), chassis_.filter());
-    watch_needed(frame.time_ns);
     collect();
     return StepResult::done;
 }
@@ -128,6 +138,10 @@ void Engine::note_slow_channels(const Frame& frame, std::uint64_t admitted) {
 
 void Engine::step_longitudinal(const Frame& frame, std::uint64_t admitted, double dt_s) {
     const double time_s = frame.time_s();
+    if (have_accel_x_ && !usable(Channel::accel_x)) {
+        have_accel_x_ = false;
+        speed_time_s_ = 0.0;
+    }
     if (has(admitted, Channel::accel_x)) {
         have_accel_x_ = true;
         accel_x_mps2_ = frame.get(Channel::accel_x);
@@ -156,7 +170,14 @@ void Engine::step_longitudinal(const Frame& frame, std::uint64_t admitted, doubl
         status.innovation_variance = innovation.variance;
         status.test_ratio = square(innovation.value) / (64.0 * innovation.variance);
         status.result = status.test_ratio <= 1.0 ? FusionResult::used : FusionResult::gated;
-        if (status.result == FusionResult::gated) ++intake_.health()[index(Channel::speed)].gated;
+        if (status.result == FusionResult::gated) {
+            ++intake_.health()[index(Channel::speed)].gated;
+            // Either the sensor has jumped or the filter has lost the car: after a while the sensor is believed.
+            speed_gated_s_ += since_s;
+            if (speed_gated_s_ > kSpeedGatedFor_s) longitudinal_.restart(measured);
+        } else {
+            speed_gated_s_ = 0.0;
+        }
         if (!have_accel_x_) {  // the derivative stands in for the accelerometer
             const double since = time_s - speed_time_s_;
             if (speed_time_s_ > 0.0 && since > 0.0 && since < 0.2) {
@@ -166,6 +187,11 @@ void Engine::step_longitudinal(const Frame& frame, std::uint64_t admitted, doubl
             speed_before_mps_ = measured;
             speed_time_s_ = time_s;
         }
+    }
+    if (have_pitot_ && !usable(Channel::pitot_pressure)) {
+        have_pitot_ = false;
+        pitot_ratio_ = 1.0;
+        chassis_.wind_is_unknown();
     }
     if (has(admitted, Channel::pitot_pressure)) {
         const double ground = 0.5 * air_density_kgpm3_ * square(longitudinal_.speed_mps());
@@ -219,12 +245,23 @@ void Engine::find_brakes(const Frame& frame, std::uint64_t admitted) {
     const double distance = lap_distance_m_ - (time_s - *onset) * longitudinal_.speed_mps();
     const std::int32_t zone =
         longitudinal_.speed_mps() > kSlowFrom_mps ? zones_.at(distance) : Zones::kUnknown;
+    if (command_fell_unseen_ && *onset < command_fell_s_ + kUnseenFor_s) {
+        alarms_.push(Alarm{AlarmKind::unknown_at_brakes, frame.time_ns, 0, Channel::flap_position, 0.0, {}});
+    }
+    command_fell_unseen_ = false;
     tracker_.brakes(*onset, zone, distance, aero_now(time_s), chassis_.filter());
 }
 
 void Engine::step_flap(const Frame& frame, std::uint64_t admitted) {
     const double time_s = frame.time_s();
-    if (has(admitted, Channel::flap_command)) flap_.command(time_s, frame.get(Channel::flap_command));
+    if (has(admitted, Channel::flap_command)) {
+        const double asked = frame.get(Channel::flap_command);
+        if (flap_.asked_open() && asked < 0.5 && !usable(Channel::flap_position)) {
+            command_fell_unseen_ = true;
+            command_fell_s_ = time_s;
+        }
+        flap_.command(time_s, asked);
+    }
     if (!has(admitted, Channel::flap_position)) return;
     const FlapMotion::Step step = flap_.position(time_s, frame.get(Channel::flap_position));
     tracker_.flap_moved(time_s, frame.get(Channel::flap_position));
@@ -242,8 +279,14 @@ void Engine::step_flap(const Frame& frame, std::uint64_t admitted) {
 
 void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_s) {
     const double time_s = frame.time_s();
-    const AxleLoads::Load front = front_loads_.take(frame, admitted, intake_, accel_y_mps2_);
-    const AxleLoads::Load rear = rear_loads_.take(frame, admitted, intake_, accel_y_mps2_);
+    const auto around = [&](const AxleHeights& heights) {
+        return AxleLoads::Surroundings{accel_y_mps2_, longitudinal_.speed_mps(), heights.smooth_dh_m(),
+                                       heights.age_s(time_s) < settings_.stale_s};
+    };
+    const AxleLoads::Load front =
+        front_loads_.take(frame, admitted, intake_, front_watch_, around(front_heights_));
+    const AxleLoads::Load rear =
+        rear_loads_.take(frame, admitted, intake_, rear_watch_, around(rear_heights_));
     const bool first = !loads_known_;
     loads_known_ = front.known && rear.known;
     ReattachmentBank& bank = tracker_.bank();
@@ -307,9 +350,11 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
         chassis_.drift(elapsed, have_pitot_, have_heading_ ? 0.0 : turn_radps);
         longitudinal_.drift(elapsed, 0.002);
     }
-    const double roll = rear_heights_.can_tell_roll() ? rear_heights_.roll_rad() : front_heights_.roll_rad();
-    fuse_height(front_heights_, front_road_, kRoadFront, frame, admitted, roll);
-    fuse_height(rear_heights_, rear_road_, kRoadRear, frame, admitted, roll);
+    fuse_height(front_heights_, front_road_, kRoadFront, frame, admitted,
+                front_watch_.roll_rad(accel_y_mps2_));
+    fuse_height(rear_heights_, rear_road_, kRoadRear, frame, admitted, rear_watch_.roll_rad(accel_y_mps2_));
+    stand_in_for_height(front_heights_, front_watch_, kRoadFront, time_s, front);
+    stand_in_for_height(rear_heights_, rear_watch_, kRoadRear, time_s, rear);
     if (has(admitted, Channel::accel_z)) fuse_accel_z(time_s, frame.get(Channel::accel_z));
 }
 
@@ -355,6 +400,20 @@ void Engine::fuse_height(AxleHeights& heights, RoadTuning& tuning, ChassisState 
         const double interval = std::max(intake_.health()[index(heights.sensor(0).channel)].interval_s, 1e-4);
         tuning.learn(innovation.value, innovation.variance, interval);
     }
+}
+
+// An axle whose ride heights are all lost has a height all the same: the one that its load makes.
+void Engine::stand_in_for_height(AxleHeights& heights, const AxleWatch& watch, ChassisState road,
+                                 double time_s, const AxleLoads::Load& load) {
+    if (heights.age_s(time_s) < kHeightLost_s || time_s < heights.stood_in_until_s() + kStandInEvery_s)
+        return;
+    const double dh = watch.height_from_load_m(load.sum_n, longitudinal_.speed_mps());
+    heights.stand_in(dh, time_s);
+    auto& filter = chassis_.filter();
+    const RideHeightModel model{heights.x_m() + chassis_.constants().cg_to_front_m, road};
+    (void)filter.expect(model.J_height_state(), square(kStandInSd_m));
+    if (tracker_.bank().running()) return;  // a closing is not judged by it
+    filter.apply(dh - model.predict(filter.x));
 }
 
 void Engine::fuse_accel_z(double time_s, double measured_mps2) {
@@ -419,26 +478,80 @@ AeroNow Engine::aero_now(double time_s) const {
     now.rear_area_attached_m2 = x[kAreaRear] + x[kSlopeRear] * dh_rear;
     now.rear_area_sd_m2 = std::sqrt(chassis_.filter().variance(kAreaRear));
     now.lap = static_cast<std::int32_t>(std::lround(lap_));
-    now.reliable = loads_known_ && stale_ == 0 && converged();
+    now.reliable = loads_known_ && heights_known_ && stale_ == 0 && converged();
     return now;
 }
 
+bool Engine::usable(Channel c) const {
+    const ChannelHealth& h = intake_.health()[index(c)];
+    return h.trust == Trust::good &&
+           intake_.age_s(c, time_ns_) <= std::max(settings_.stale_s, 4.0 * h.interval_s);
+}
+
+void Engine::watch_sensors(const Frame& frame) {
+    const double time_s = frame.time_s();
+    front_watch_.see(frame);
+    rear_watch_.see(frame);
+    if (frame.has(Channel::accel_y) && std::isfinite(frame.get(Channel::accel_y))) {
+        accel_y_sum_ += frame.get(Channel::accel_y);
+        accel_y_count_ += 1.0;
+    }
+    if (time_s < next_watch_s_) return;
+    const double elapsed = std::clamp(time_s - watched_s_, AxleWatch::kEvery_s, 5.0 * AxleWatch::kEvery_s);
+    next_watch_s_ = time_s + AxleWatch::kEvery_s;
+    watched_s_ = time_s;
+    intake_.expire(frame.time_ns);
+    HealthTable& health = intake_.health();
+    const bool lateral = accel_y_count_ > 0.0 && usable(Channel::accel_y);
+    const double accel_y = accel_y_count_ > 0.0 ? accel_y_sum_ / accel_y_count_ : 0.0;
+    accel_y_sum_ = accel_y_count_ = 0.0;
+    // Both axles' sides at once: it is the lateral acceleration that both are compared with.
+    sides_broken_s_ = lateral && front_watch_.sides_broken() && rear_watch_.sides_broken()
+                          ? sides_broken_s_ + elapsed
+                          : 0.0;
+    if (sides_broken_s_ > 0.1) {
+        ChannelHealth& h = health[index(Channel::accel_y)];
+        h.trust = Trust::distrusted;
+        h.fault = Fault::jumped;
+        h.since_ns = frame.time_ns;
+    }
+    front_watch_.judge(elapsed, frame.time_ns, longitudinal_.speed_mps(), accel_y, lateral, health);
+    rear_watch_.judge(elapsed, frame.time_ns, longitudinal_.speed_mps(), accel_y, lateral, health);
+    watch_needed(frame.time_ns);
+    tell_distrust(frame.time_ns);
+}
+
+// Data without which nothing can be said: an alarm when they stop, and "stale" until they come again.
 void Engine::watch_needed(std::int64_t time_ns) {
-    constexpr std::array<Channel, 6> kNeeded{Channel::speed,   Channel::load_fl, Channel::load_fr,
-                                             Channel::load_rl, Channel::load_rr, Channel::flap_position};
-    const auto watch = [&](Channel c) {
-        const std::uint64_t bit = std::uint64_t{1} << index(c);
-        const bool stale =
-            intake_.health()[index(c)].samples > 0 && intake_.age_s(c, time_ns) > settings_.stale_s;
-        if (stale && (stale_ & bit) == 0) {
-            alarms_.push(Alarm{AlarmKind::data_stale, time_ns, 0, c, 1.0, {}});
-            ChannelHealth& health = intake_.health()[index(c)];
-            health.fault = Fault::gone;
-            health.since_ns = health.last_time_ns;
-        }
-        stale_ = stale ? stale_ | bit : stale_ & ~bit;
+    const auto watch = [&](Channel tells, bool there) {
+        const std::uint64_t bit = std::uint64_t{1} << index(tells);
+        if (!there && (stale_ & bit) == 0)
+            alarms_.push(Alarm{AlarmKind::data_stale, time_ns, 0, tells, 1.0, {}});
+        stale_ = there ? stale_ & ~bit : stale_ | bit;
     };
-    for (const Channel c : kNeeded) watch(c);
+    const double time_s = static_cast<double>(time_ns) * 1e-9;
+    const bool front_height = front_heights_.age_s(time_s) < settings_.stale_s;
+    const bool rear_height = rear_heights_.age_s(time_s) < settings_.stale_s;
+    const bool front_load = usable(Channel::load_fl) || usable(Channel::load_fr);
+    const bool rear_load = usable(Channel::load_rl) || usable(Channel::load_rr);
+    const bool early = time_s < start_s_ + settings_.stale_s;  // channels have their first sample when their turn comes
+    watch(Channel::speed, early || usable(Channel::speed));
+    watch(Channel::flap_position, early || usable(Channel::flap_position));
+    watch(Channel::load_fl, early || front_load || front_height);
+    watch(Channel::load_rl, early || rear_load || rear_height);
+    heights_known_ = (front_height || front_load) && (rear_height || rear_load);
+}
+
+void Engine::tell_distrust(std::int64_t time_ns) {
+    for (std::size_t i = 0; i < kChannelCount; ++i) {
+        const std::uint64_t bit = std::uint64_t{1} << i;
+        const ChannelHealth& h = intake_.health()[i];
+        const bool bad = h.trust == Trust::distrusted;
+        if (bad && (told_ & bit) == 0) {
+            alarms_.push(Alarm{AlarmKind::sensor_distrusted, time_ns, 0, static_cast<Channel>(i), 1.0, {}});
+        }
+        told_ = bad ? told_ | bit : told_ & ~bit;
+    }
 }
 
 void Engine::collect() {

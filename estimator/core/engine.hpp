@@ -9,6 +9,7 @@
 
 #include "estimator/core/axle_heights.hpp"
 #include "estimator/core/axle_loads.hpp"
+#include "estimator/core/axle_watch.hpp"
 #include "estimator/core/brake_onset.hpp"
 #include "estimator/core/car.hpp"
 #include "estimator/core/chassis_filter.hpp"
@@ -55,6 +56,7 @@ class Engine {
     // For those who look closer: tests and benchmarks.
     [[nodiscard]] const ChassisFilter& chassis() const { return chassis_; }
     [[nodiscard]] const LongitudinalFilter& longitudinal() const { return longitudinal_; }
+    [[nodiscard]] const AxleWatch& watch(bool rear) const { return rear ? rear_watch_ : front_watch_; }
     [[nodiscard]] const RoadTuning& front_road() const { return front_road_; }
     [[nodiscard]] const RoadTuning& rear_road() const { return rear_road_; }
 
@@ -65,9 +67,14 @@ class Engine {
     void step_chassis(const Frame& frame, std::uint64_t admitted, double dt_s);
     void fuse_height(AxleHeights& heights, RoadTuning& tuning, ChassisState road, const Frame& frame,
                      std::uint64_t admitted, double roll_rad);
+    void stand_in_for_height(AxleHeights& heights, const AxleWatch& watch, ChassisState road, double time_s,
+                             const AxleLoads::Load& load);
     void fuse_accel_z(double time_s, double measured_mps2);
     void find_brakes(const Frame& frame, std::uint64_t admitted);
+    void watch_sensors(const Frame& frame);
     void watch_needed(std::int64_t time_ns);
+    void tell_distrust(std::int64_t time_ns);
+    [[nodiscard]] bool usable(Channel c) const;
     void restart_motion(double time_s);
     void collect();
     [[nodiscard]] double dynamic_pressure_pa() const;  // as the filters believe it
@@ -85,6 +92,7 @@ class Engine {
     AxleHeights front_heights_, rear_heights_;
     AxleLoads front_loads_{Channel::load_fl, Channel::load_fr};
     AxleLoads rear_loads_{Channel::load_rl, Channel::load_rr};
+    AxleWatch front_watch_, rear_watch_;
     RoadTuning front_road_, rear_road_;
     FlapMotion flap_;
     BrakeOnset brakes_;
@@ -93,11 +101,13 @@ class Engine {
 
     bool started_ = false;
     std::int64_t time_ns_ = 0;
+    double start_s_ = 0.0;
     double accel_x_mps2_ = 0.0, accel_y_mps2_ = 0.0;
     double accel_x_sum_ = 0.0, accel_x_count_ = 0.0;  // since the last drag measurement
     double drive_force_n_ = 0.0, drive_force_before_n_ = 0.0;
     bool have_accel_x_ = false;
     double slip_force_n_ = 0.0;  // tyre force along x as the slip follows it
+    double speed_gated_s_ = 0.0;
     double speed_before_mps_ = 0.0, speed_time_s_ = 0.0;
     double air_density_kgpm3_;
     double wind_variance_m2ps2_;  // mean square of the wind against the car
@@ -112,6 +122,13 @@ class Engine {
     bool loads_known_ = false;
     double missing_open_ = 0.0;  // base path while no closing is judged
     double next_drift_s_ = 0.0;
+    double next_watch_s_ = 0.0, watched_s_ = 0.0;
+    double accel_y_sum_ = 0.0, accel_y_count_ = 0.0;  // since the watches last judged
+    double sides_broken_s_ = 0.0;
+    std::uint64_t told_ = 0;            // distrusted channels that an alarm has told of
+    bool heights_known_ = true;         // each axle has at least one height or a load to take it from
+    bool command_fell_unseen_ = false;  // a closing was asked for while the flap's position was not to be had
+    double command_fell_s_ = 0.0;
     std::uint64_t stale_ = 0;  // needed channels that are stale, bits as in Frame::present
     Estimate estimate_;
     FixedQueue<Closure, 16> closures_;

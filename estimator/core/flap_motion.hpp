@@ -22,6 +22,7 @@ class FlapMotion {
     [[nodiscard]] Step position(double time_s, double value);
 
     [[nodiscard]] FlapPhase phase() const { return phase_; }
+    [[nodiscard]] bool asked_open() const { return commanded_ > 0.5; }
     [[nodiscard]] double position_now() const { return position_; }
     [[nodiscard]] double time_command_s() const { return time_command_s_; }  // of the newest closing
     [[nodiscard]] double time_moved_s() const { return time_moved_s_; }

@@ -13,7 +13,33 @@ constexpr double kStuckAfter_s = 0.1;        // a lively channel that shows one 
 constexpr std::uint64_t kStuckSamples = 12;  // and for at least so many samples
 constexpr double kLivelyShare = 0.8;         // changes from sample to sample on so many samples: lively
 constexpr std::uint64_t kMovingAgain = 40;   // changing samples after which a stuck channel is believed again
+constexpr double kSpikeNoise =
+    14.0;  // times the noise, from one sample to the next: further than any car moves
+constexpr double kSpikeMemory_s = 4.0;
+constexpr double kSpikesNoisy = 5.0;  // so many of late: the channel is called noisy
+constexpr double kGoneAfter_s = 0.3;
+constexpr double kGoneIntervals = 12.0;
 constexpr double kSqrtSix = 2.449489742783178;  // sd of a second difference of white noise of sd 1
+
+// Channels that no jump of the car's own makes look like a spike; the others step by nature (gear changes,
+// brakes, flap).
+bool can_spike(Channel c) {
+    switch (c) {
+        case Channel::speed:
+        case Channel::load_fl:
+        case Channel::load_fr:
+        case Channel::load_rl:
+        case Channel::load_rr:
+        case Channel::accel_x:
+        case Channel::accel_y:
+        case Channel::accel_z:
+        case Channel::pitot_pressure:
+        case Channel::yaw_rate:
+            return true;
+        default:
+            return is_ride_height(c);
+    }
+}
 
 }  // namespace
 
@@ -52,9 +78,57 @@ bool Intake::admit(Channel c, std::int64_t time_ns, double value) {
         h.status.result = FusionResult::out_of_range;
         return false;
     }
-    learn(learned_[index(c)], h, time_ns, value);
+    Learned& l = learned_[index(c)];
+    if (can_spike(c) && is_spike(l, h, value, static_cast<double>(time_ns - h.last_time_ns) * 1e-9)) {
+        ++h.gated;
+        h.status.result = FusionResult::gated;
+        return false;
+    }
+    learn(l, h, time_ns, value);
     h.status.result = h.trust == Trust::distrusted ? FusionResult::distrusted : FusionResult::not_tried;
     return h.trust == Trust::good;
+}
+
+// A sample far from the one before is held back; if the next one lies on the same side, the channel has
+// really moved.
+bool Intake::is_spike(Learned& l, ChannelHealth& h, double value, double since_s) {
+    l.spikes *= std::exp(-std::min(since_s, 1.0) / kSpikeMemory_s);
+    if (h.fault == Fault::noisy && l.spikes < 1.0) h.fault = Fault::none;
+    if (h.samples < 100 || l.moving_share < kLivelyShare || l.noise_sd <= 0.0 ||
+        since_s > kGapIntervals * h.interval_s) {
+        l.suspect = false;
+        return false;
+    }
+    const double limit = kSpikeNoise * l.noise_sd;
+    if (std::abs(value - h.last_value) <= limit) {
+        l.suspect = false;
+        return false;
+    }
+    const bool same_side = (value > h.last_value) == (l.suspect_value > h.last_value);
+    if (l.suspect && same_side) {
+        l.suspect = false;
+        l.spikes = std::max(l.spikes - 1.0, 0.0);
+        return false;
+    }
+    l.suspect = true;
+    l.suspect_value = value;
+    l.spikes += 1.0;
+    if (l.spikes > kSpikesNoisy && h.fault == Fault::none) {
+        h.fault = Fault::noisy;
+        h.since_ns = h.status.time_ns;
+    }
+    return true;
+}
+
+void Intake::expire(std::int64_t now_ns) {
+    for (ChannelHealth& h : health_) {
+        if (h.samples < 20 || h.trust != Trust::good) continue;
+        const double age_s = static_cast<double>(now_ns - h.last_time_ns) * 1e-9;
+        if (age_s < std::max(kGoneAfter_s, kGoneIntervals * h.interval_s)) continue;
+        h.trust = Trust::distrusted;
+        h.fault = Fault::gone;
+        h.since_ns = h.last_time_ns;
+    }
 }
 
 void Intake::learn(Learned& l, ChannelHealth& h, std::int64_t time_ns, double value) {
@@ -87,6 +161,11 @@ void Intake::learn(Learned& l, ChannelHealth& h, std::int64_t time_ns, double va
         l.moving_share / std::pow(0.99, static_cast<double>(std::min<std::uint64_t>(l.same_in_a_row, 100)));
     const bool stuck = l.same_in_a_row >= kStuckSamples && lively_before > kLivelyShare &&
                        static_cast<double>(time_ns - l.same_since_ns) * 1e-9 > kStuckAfter_s;
+    if (h.trust == Trust::distrusted && h.fault == Fault::gone) {
+        h.trust = Trust::good;
+        h.fault = Fault::none;
+        h.since_ns = time_ns;
+    }
     if (h.trust == Trust::good && stuck) {
         h.trust = Trust::distrusted;
         h.fault = Fault::stuck;

@@ -17,6 +17,8 @@ class Intake {
     // Samples of the frame that may be fused; the frame's time is later than the one before.
     [[nodiscard]] std::uint64_t admit(const Frame& frame);
     void count_repeats(const Frame& frame);
+    // A channel that has not come for too long is gone.
+    void expire(std::int64_t now_ns);
 
     [[nodiscard]] const HealthTable& health() const { return health_; }
     [[nodiscard]] HealthTable& health() { return health_; }
@@ -34,7 +36,11 @@ class Intake {
         std::uint64_t same_in_a_row = 0;
         std::int64_t same_since_ns = 0;
         std::uint64_t moving_again = 0;
+        bool suspect = false;  // the newest sample stood far from the one before
+        double suspect_value = 0.0;
+        double spikes = 0.0;  // of late, forgotten over kSpikeMemory_s
     };
+    [[nodiscard]] bool is_spike(Learned& learned, ChannelHealth& health, double value, double since_s);
     [[nodiscard]] bool admit(Channel c, std::int64_t time_ns, double value);
     void learn(Learned& learned, ChannelHealth& health, std::int64_t time_ns, double value);
 

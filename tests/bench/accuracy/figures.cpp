@@ -40,6 +40,8 @@ Figures figures_of(std::span<const OutingResult> results) {
     for (const OutingResult& r : results) {
         ++f.outings;
         f.invented += r.invented;
+        for (const core::Alarm& a : r.alarms)
+            f.distrusted += a.kind == core::AlarmKind::sensor_distrusted ? 1 : 0;
         wall_s += r.wall_s;
         duration_s += r.duration_s;
         for (const ClosurePair& p : r.closings) {
@@ -130,13 +132,19 @@ std::string closing_rows(const OutingResult& result) {
         }
         out += line;
     }
+    for (const core::Alarm& a : result.alarms) {
+        if (a.kind != core::AlarmKind::sensor_distrusted && a.kind != core::AlarmKind::data_stale) continue;
+        out += "  " + std::to_string(static_cast<double>(a.time_ns) * 1e-9) +
+               " s: " + (a.kind == core::AlarmKind::data_stale ? "stale" : "distrusted") + " channel " +
+               std::to_string(index(a.channel)) + "\n";
+    }
     return out;
 }
 
 std::string table_head() {
     return "scenario                     closings found inv | tau rms    z | t95 bias   rms  in% | slow%  "
            "oth% part% | "
-           "wrong%  uncl% | short rms    z | front  rear  drag % | in%: f    r    d | x real";
+           "wrong%  uncl% | short rms    z | front  rear  drag % | in%: f    r    d | distr | x real";
 }
 
 std::string table_row(const std::string& name, const Figures& f) {
@@ -144,12 +152,12 @@ std::string table_row(const std::string& name, const Figures& f) {
     std::snprintf(line, sizeof line,
                   "%-28s %8zu %5zu %3zu | %7.1f %4.2f | %8.1f %5.1f %4.0f | %5.0f %5.1f %5.0f | %6.1f %6.1f "
                   "| %9.0f %4.2f | "
-                  "%5.2f %5.2f %5.2f  | %6.0f %4.0f %4.0f | %6.0f",
+                  "%5.2f %5.2f %5.2f  | %6.0f %4.0f %4.0f | %5zu | %6.0f",
                   name.c_str(), f.closings, f.found, f.invented, f.tau_rms_ms, f.tau_z_rms, f.t95_bias_ms,
                   f.t95_rms_ms, 100 * f.t95_inside, 100 * f.slow_flagged, 100 * f.others_flagged,
                   100 * f.part_flagged, 100 * f.verdict_wrong, 100 * f.verdict_unclear, f.shortfall_rms_n,
                   f.shortfall_z_rms, 100 * f.front_rms, 100 * f.rear_rms, 100 * f.drag_rms,
-                  100 * f.front_inside, 100 * f.rear_inside, 100 * f.drag_inside, f.times_real);
+                  100 * f.front_inside, 100 * f.rear_inside, 100 * f.drag_inside, f.distrusted, f.times_real);
     return line;
 }
 

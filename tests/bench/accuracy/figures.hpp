@@ -21,7 +21,8 @@ struct Figures {
     double shortfall_rms_n = 0.0, shortfall_z_rms = 0.0;
     double front_rms = 0.0, rear_rms = 0.0, drag_rms = 0.0;  // of the outing's mean, relative
     double front_inside = 0.0, rear_inside = 0.0, drag_inside = 0.0;
-    double times_real = 0.0;  // outing's length over time spent in the engine
+    std::size_t distrusted = 0;  // alarms that a sensor is distrusted
+    double times_real = 0.0;     // outing's length over time spent in the engine
 };
 
 [[nodiscard]] Figures figures_of(std::span<const OutingResult> results);
