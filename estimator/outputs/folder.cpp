@@ -36,7 +36,7 @@ ClosureCounts Tally::counts() const {
     return n;
 }
 
-Folder::Folder(std::filesystem::path path, Outing outing)
+Folder::Folder(const std::filesystem::path& path, Outing outing)
     : path_(made(path)),
       outing_(std::move(outing)),
       closures_(path_ / "closures.csv", LineFile::Flush::each_line),

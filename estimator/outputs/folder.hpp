@@ -63,7 +63,7 @@ class Folder : public Sink {
   public:
     // Makes the folder where it is missing and replaces the files of an earlier run. Throws
     // std::runtime_error naming what could not be written.
-    Folder(std::filesystem::path path, Outing outing);
+    Folder(const std::filesystem::path& path, Outing outing);
 
     void on_estimate(const core::Estimate& estimate) override;
     void on_closure(const core::Closure& closure) override;

@@ -11,7 +11,7 @@
 namespace holdfast::outputs {
 namespace {
 
-constexpr std::size_t kBlockBytes = 64 * 1024;
+constexpr std::size_t kBlockBytes = std::size_t{64} * 1024;
 
 [[noreturn]] void fail(const std::filesystem::path& path, const char* doing) {
     throw std::runtime_error(path.string() + ": cannot " + doing + ": " + std::strerror(errno));

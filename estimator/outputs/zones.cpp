@@ -46,6 +46,7 @@ std::vector<Zone> zones(std::span<const core::Closure> closures) {
     for (const core::Closure& c : closures)
         if (c.braked && c.zone > 0) by_number[c.zone].push_back(&c);
     std::vector<Zone> table;
+    table.reserve(by_number.size());
     for (const auto& [number, members] : by_number) table.push_back(zone(number, members));
     return table;
 }
