@@ -17,6 +17,10 @@ std::string demo_car() {
     return HOLDFAST_SOURCE_DIR "/replay_logs/demo/car.toml";
 }
 
+std::vector<std::string> live_words(const std::string& endpoint, const std::string& out) {
+    return {"live", "--from", endpoint, "--car", demo_car(), "--out", out};
+}
+
 std::string first_seconds(double seconds, const TempFolder& folder) {
     const std::string path = folder / "first.csv";
     auto source = session::open_log(demo_log(), {});

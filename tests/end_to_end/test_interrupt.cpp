@@ -14,9 +14,7 @@ TEST_CASE("Ctrl-C and SIGTERM end a live run cleanly: files whole, marked incomp
     INFO("signal " << signal);
     const TempFolder folder;
     const Node node(demo_log(), "20", folder.path());
-    Process live("holdfast",
-                 {"live", "--from", node.endpoint(), "--car", demo_car(), "--out", folder / "out"},
-                 folder.path());
+    Process live("holdfast", live_words(node.endpoint(), folder / "out"), folder.path());
     REQUIRE(live.says("closing 1"));
     live.send(signal);
     REQUIRE(live.wait(std::chrono::seconds(10)) == 3);
@@ -37,9 +35,7 @@ TEST_CASE("Ctrl-C and SIGTERM end a live run cleanly: files whole, marked incomp
 TEST_CASE("a live run that was killed leaves whole lines and a summary that says incomplete") {
     const TempFolder folder;
     const Node node(demo_log(), "20", folder.path());
-    Process live("holdfast",
-                 {"live", "--from", node.endpoint(), "--car", demo_car(), "--out", folder / "out"},
-                 folder.path());
+    Process live("holdfast", live_words(node.endpoint(), folder / "out"), folder.path());
     REQUIRE(live.says("closing 1"));
     live.send(SIGKILL);
     REQUIRE(live.wait(std::chrono::seconds(10)) == 128 + SIGKILL);

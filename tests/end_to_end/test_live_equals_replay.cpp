@@ -12,9 +12,7 @@ TEST_CASE("replay --as-live equals live to the bit through real sockets") {
     const TempFolder folder;
     {
         const Node node(demo_log(), "0", folder.path());
-        const Ended live = run(
-            "holdfast", {"live", "--from", node.endpoint(), "--car", demo_car(), "--out", folder / "live"},
-            folder.path());
+        const Ended live = run("holdfast", live_words(node.endpoint(), folder / "live"), folder.path());
         INFO(live.err);
         REQUIRE(live.status == 0);
     }

@@ -86,9 +86,7 @@ std::size_t rows(const std::string& csv) {
 TEST_CASE("a node that starts anew gets a folder of its own, and the results until then stay") {
     const TempFolder folder;
     TestNode node;
-    Process live("holdfast",
-                 {"live", "--from", node.endpoint(), "--car", demo_car(), "--out", folder / "out"},
-                 folder.path());
+    Process live("holdfast", live_words(node.endpoint(), folder / "out"), folder.path());
     node.wait_for_listener();
     node.begin_stream(10.0);
     node.begin_stream(5.0);
@@ -107,9 +105,7 @@ TEST_CASE("a node that starts anew gets a folder of its own, and the results unt
 TEST_CASE("silence raises the alarm of stale data by the receiver's clock, and is over when data are back") {
     const TempFolder folder;
     TestNode node;
-    Process live("holdfast",
-                 {"live", "--from", node.endpoint(), "--car", demo_car(), "--out", folder / "out"},
-                 folder.path());
+    Process live("holdfast", live_words(node.endpoint(), folder / "out"), folder.path());
     node.wait_for_listener();
     node.begin_stream(5.0);
     REQUIRE(live.says("data stale"));
@@ -124,10 +120,9 @@ TEST_CASE("silence raises the alarm of stale data by the receiver's clock, and i
 TEST_CASE("a listener to the results hears every closing that is written") {
     const TempFolder folder;
     TestNode node;
-    Process live("holdfast",
-                 {"live", "--from", node.endpoint(), "--car", demo_car(), "--out", folder / "out",
-                  "--publish", "tcp://127.0.0.1:*"},
-                 folder.path());
+    std::vector<std::string> words = live_words(node.endpoint(), folder / "out");
+    words.insert(words.end(), {"--publish", "tcp://127.0.0.1:*"});
+    Process live("holdfast", words, folder.path());
     REQUIRE(live.says("publishing on tcp://127.0.0.1:"));
     std::string endpoint = live.err().substr(live.err().find("tcp://"));
     endpoint = endpoint.substr(0, endpoint.find('\n'));

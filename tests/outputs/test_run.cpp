@@ -3,6 +3,7 @@
 
 #include "estimator/outputs/folder.hpp"
 #include "estimator/outputs/run.hpp"
+#include "tests/core/small_car.hpp"
 #include "tests/outputs/examples.hpp"
 
 using namespace holdfast;
@@ -23,28 +24,6 @@ struct Listener : outputs::Sink {
     void on_end(const outputs::RunEnd& end) override { ends.push_back(end); }
 };
 
-// A car of round numbers; what the engine makes of it does not matter here.
-core::Car car() {
-    core::Car c;
-    c.mass_kg = {800.0, 4.0};
-    c.wheelbase_m = 3.5;
-    c.front_weight_share = {0.45, 0.002};
-    c.cg_height_m = {0.3, 0.015};
-    c.pitch_inertia_kgm2 = {1100.0, 110.0};
-    c.roll_inertia_kgm2 = {200.0, 20.0};
-    c.rolling_resistance = {0.015, 0.0015};
-    for (core::Axle* axle : {&c.front, &c.rear}) {
-        axle->track_m = 1.6;
-        axle->unsprung_mass_kg = {20.0, 1.0};
-        axle->wheel_rate_npm = {200e3, 6e3};
-        axle->anti_roll_rate_npm = {60e3, 3e3};
-        axle->damping_nspm = {5e3, 750.0};
-        axle->tyre_rate_npm = {300e3, 15e3};
-    }
-    c.flap_chord_m = 0.24;
-    return c;
-}
-
 Frame frame_at(std::int64_t time_ns) {
     Frame frame;
     frame.time_ns = time_ns;
@@ -56,7 +35,7 @@ Frame frame_at(std::int64_t time_ns) {
 
 TEST_CASE("estimates come at the rate, on a grid that starts at source time 0") {
     Listener listener;
-    outputs::Run run(car(), {}, 50.0, {&listener});
+    outputs::Run run(testing::small_car(), {}, 50.0, {&listener});
     const std::int64_t joined_ns = 1'003'000'000;  // off the grid
     for (int i = 0; i < 400; ++i) run.step(frame_at(joined_ns + i * kFramePeriodNs));
     run.finish(true);
@@ -72,7 +51,7 @@ TEST_CASE("estimates come at the rate, on a grid that starts at source time 0") 
 
 TEST_CASE("a pause in the frames is not filled with estimates") {
     Listener listener;
-    outputs::Run run(car(), {}, 50.0, {&listener});
+    outputs::Run run(testing::small_car(), {}, 50.0, {&listener});
     run.step(frame_at(0));
     run.step(frame_at(10'000'000'000));
     run.step(frame_at(10'000'000'000 + kFramePeriodNs));
@@ -82,7 +61,7 @@ TEST_CASE("a pause in the frames is not filled with estimates") {
 
 TEST_CASE("frames that repeat or run backwards are counted and left out") {
     Listener listener;
-    outputs::Run run(car(), {}, 50.0, {&listener});
+    outputs::Run run(testing::small_car(), {}, 50.0, {&listener});
     for (const std::int64_t time_ms : {0, 20, 20, 10, 40}) run.step(frame_at(time_ms * 1'000'000));
     run.finish(false, "broke off");
 
@@ -99,7 +78,7 @@ TEST_CASE("frames that repeat or run backwards are counted and left out") {
 
 TEST_CASE("health is told once a second and at the end") {
     Listener listener;
-    outputs::Run run(car(), {}, 50.0, {&listener});
+    outputs::Run run(testing::small_car(), {}, 50.0, {&listener});
     for (int i = 0; i <= 1000; ++i) run.step(frame_at(i * kFramePeriodNs));  // 2.5 s
     run.finish(true);
     CHECK(listener.health_times_ns ==
@@ -111,7 +90,7 @@ TEST_CASE("the same frames give the same files, however the run is fed") {
     const testing::TempFolder two;
     for (const testing::TempFolder* folder : {&one, &two}) {
         outputs::Folder files(folder->path(), {.flap_chord_m = 0.24, .rate_hz = 50.0});
-        outputs::Run run(car(), {}, 50.0, {&files});
+        outputs::Run run(testing::small_car(), {}, 50.0, {&files});
         for (int i = 0; i < 2000; ++i) run.step(frame_at(i * kFramePeriodNs));
         run.finish(true);
     }
