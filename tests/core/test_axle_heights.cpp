@@ -1,10 +1,8 @@
 // SPDX-License-Identifier: MIT
-// Two sensors of an axle as one: heights with roll taken out, loads with one corner gone.
+// The height sensors of an axle as one, roll taken out.
 #include <catch2/catch.hpp>
-#include <random>
 
 #include "estimator/core/axle_heights.hpp"
-#include "estimator/core/axle_loads.hpp"
 #include "tests/core/small_car.hpp"
 
 namespace {
@@ -55,34 +53,4 @@ TEST_CASE("heights of an axle with one sensor left: the roll known from elsewher
     CHECK(height->dh_m == Approx(-0.023).margin(1e-12));
     CHECK(height->noise_gain == Approx(1.0));
     CHECK_FALSE(rear.take(frame, 0, 0.02));  // nothing admitted, nothing said
-}
-
-TEST_CASE(
-    "loads of an axle: the sum; a corner that falls silent is told from the other, less surely, seed 1") {
-    std::mt19937_64 random(1);
-    std::normal_distribution<double> normal;
-    Intake intake;
-    AxleLoads loads(Channel::load_rl, Channel::load_rr);
-    AxleLoads::Load load;
-    double error = 0.0, both_density = 0.0;
-    for (int i = 0; i < 8000; ++i) {
-        const double time_s = i / 400.0;
-        const double accel_y = 25.0 * std::sin(0.8 * time_s);
-        const double sum_n = 9000.0 + 500.0 * std::sin(3.0 * time_s);
-        Frame frame;
-        frame.time_ns = static_cast<std::int64_t>(i) * 2'500'000;
-        frame.set(Channel::load_rl, 0.5 * sum_n - 60.0 * accel_y + 40.0 + 30.0 * normal(random));
-        if (i < 6000)
-            frame.set(Channel::load_rr, 0.5 * sum_n + 60.0 * accel_y - 40.0 + 30.0 * normal(random));
-        load = loads.take(frame, intake.admit(frame), intake, accel_y);
-        REQUIRE(load.known);
-        if (i == 5999) both_density = load.noise_density_n2s;
-        if (i > 2000 && i < 6000) REQUIRE(std::abs(load.sum_n - sum_n) < 250.0);
-        if (i > 6010) error = std::max(error, std::abs(load.sum_n - sum_n));
-    }
-    CHECK(error < 400.0);  // twice one sensor's noise and what the transfer was learned to
-    CHECK(load.noise_density_n2s > 10.0 * both_density);
-    Frame empty;
-    empty.time_ns = static_cast<std::int64_t>(8200) * 2'500'000;
-    CHECK_FALSE(loads.take(empty, intake.admit(empty), intake, 0.0).known);
 }
