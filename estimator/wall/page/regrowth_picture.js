@@ -1,0 +1,188 @@
+// SPDX-License-Identifier: MIT
+// The picture of one closing: the share of the flap's downforce that is back against time since the flap shut, over
+// the band of the zone's usual closings, with the brakes' line and what was missing there; the flap's movement below.
+import {svg, linePath, bandPath, scale, ticks, freshId} from "./svg.js";
+import {fixed, quantityText, span} from "./units.js";
+import {mark} from "./marks.js";
+
+/** @typedef {import('./protocol.js').Closure} Closure */
+/** @typedef {import('./protocol.js').Regrowth} Regrowth */
+
+/** Value of a curve at t, linear between its points. @param {number[]} x @param {number[]} y @param {number} t */
+export function valueAt(x, y, t) {
+  const i = x.findIndex((at) => at >= t);
+  if (i < 0) return NaN;
+  if (i === 0) return t < x[0] ? NaN : y[0];
+  return y[i - 1] + ((y[i] - y[i - 1]) * (t - x[i - 1])) / (x[i] - x[i - 1]);
+}
+
+/** End of the time axis: far enough for the story, no farther. @param {Regrowth} r @param {Closure|undefined} c */
+function timeEnd(r, c) {
+  const last = r.t[r.t.length - 1];
+  if (!r.final || !c || !c.whole) return last;
+  const brake = c.time_brake === null ? 0 : c.time_brake - r.time_shut + 0.15;
+  const wanted = Math.max(0.4, (c.t95_high ?? 0.5) * 1.25, brake);
+  return Math.min(last, Math.ceil(wanted * 10 - 1e-9) / 10);
+}
+
+/**
+ * @typedef {object} RegrowthView
+ * @property {Regrowth} regrowth
+ * @property {Closure|undefined} closure
+ * @property {import('./usual.js').UsualBand} usual
+ * @property {import('./units.js').UnitChoice} units
+ * @property {number} width px
+ * @property {number} height px
+ * @property {number} em px of a line of text
+ */
+
+/** @param {RegrowthView} view @returns {SVGElement} */
+export function regrowthPicture(view) {
+  const {regrowth: r, width, height, em} = view;
+  const flapHeight = Math.max(2.2 * em, height * 0.13);
+  const plot = {left: 3.6 * em, right: width - 1.0 * em, top: 2.5 * em, bottom: height - flapHeight - 3.4 * em};
+  const x = scale(r.t[0], timeEnd(r, view.closure), plot.left, plot.right);
+  const y = scale(0, 1.1, plot.bottom, plot.top);
+  const flap = {top: plot.bottom + 0.7 * em, bottom: plot.bottom + 0.7 * em + flapHeight};
+  const clip = freshId();
+  const root = svg(
+    'svg',
+    {class: 'picture regrowth-picture', viewBox: `0 0 ${width} ${height}`, role: 'img', 'aria-label': spoken(view)},
+    svg('defs', {}, svg('clipPath', {id: clip}, svg('rect', {x: plot.left, y: 0, width: plot.right - plot.left, height}))),
+  );
+  root.append(...axes(view, x, y, plot, flap));
+  const curves = svg('g', {'clip-path': `url(#${clip})`});
+  curves.append(...usualCurves(view, x, y), ...ownCurves(r, x, y), ...flapCurve(r, x, flap));
+  root.append(curves, ...instant95(view, x, y, plot), ...brakes(view, x, y, plot, flap));
+  return root;
+}
+
+/** What the picture shows, for those who do not see it. @param {RegrowthView} view */
+function spoken({regrowth, closure, usual, units}) {
+  const parts = [`Regrowth of closing ${regrowth.closure}`];
+  if (closure && closure.t95 !== null) parts.push(`95 percent back ${span(closure.t95)} after the flap shut`);
+  if (closure?.shortfall) parts.push(`${quantityText(closure.shortfall, units, 'force')} missing at the brakes`);
+  parts.push(usual.t.length ? `usual band from ${usual.count} earlier closings` : 'usual not known yet');
+  return parts.join('; ');
+}
+
+/** @typedef {(value: number) => number} Scale */
+/** @typedef {{left: number, right: number, top: number, bottom: number}} Box */
+
+/** @param {RegrowthView} view @param {Scale} x @param {Scale} y @param {Box} plot @param {{top: number, bottom: number}} flap */
+function axes({regrowth: r, closure, em}, x, y, plot, flap) {
+  const from = r.t[0];
+  const to = timeEnd(r, closure);
+  const nodes = [];
+  for (const share of [0, 0.25, 0.5, 0.75, 1]) {
+    nodes.push(svg('line', {class: share === 1 ? 'whole-line' : 'grid', x1: plot.left, x2: plot.right, y1: y(share), y2: y(share)}));
+    nodes.push(svg('text', {class: 'tick', x: plot.left - 0.4 * em, y: y(share) + 0.32 * em, 'text-anchor': 'end'}, `${share * 100} %`));
+  }
+  for (const t of ticks(from, to, 8)) {
+    nodes.push(svg('line', {class: 'grid', x1: x(t), x2: x(t), y1: plot.top, y2: flap.bottom}));
+    nodes.push(svg('text', {class: 'tick', x: x(t), y: flap.bottom + 1.1 * em, 'text-anchor': 'middle'}, fixed(t * 1000, 0)));
+  }
+  nodes.push(svg('line', {class: 'zero-line', x1: x(0), x2: x(0), y1: plot.top, y2: flap.bottom}));
+  const since = r.shut ? 'ms since the flap shut' : 'ms since closing was asked for';
+  nodes.push(svg('text', {class: 'axis-name', x: plot.right, y: flap.bottom + 2.3 * em, 'text-anchor': 'end'}, since));
+  nodes.push(svg('text', {class: 'axis-name', x: 0.2 * em, y: 1.1 * em}, 'flap’s downforce that is back'));
+  if (r.chord_time > 0) {
+    for (const n of ticks(0, to / r.chord_time, 7)) {
+      const at = x(n * r.chord_time);
+      nodes.push(svg('line', {class: 'tick-line', x1: at, x2: at, y1: plot.top - 0.35 * em, y2: plot.top}));
+      nodes.push(svg('text', {class: 'tick', x: at, y: plot.top - 0.6 * em, 'text-anchor': 'middle'}, String(n)));
+    }
+    nodes.push(svg('text', {class: 'axis-name', x: plot.right, y: 0.85 * em, 'text-anchor': 'end'}, 'chords of travel'));
+  }
+  nodes.push(svg('text', {class: 'tick', x: plot.left - 0.4 * em, y: flap.top + 0.8 * em, 'text-anchor': 'end'}, 'open'));
+  nodes.push(svg('text', {class: 'tick', x: plot.left - 0.4 * em, y: flap.bottom, 'text-anchor': 'end'}, 'shut'));
+  nodes.push(svg('line', {class: 'axis-line', x1: plot.left, x2: plot.right, y1: flap.bottom, y2: flap.bottom}));
+  nodes.push(svg('line', {class: 'axis-line', x1: plot.left, x2: plot.right, y1: plot.bottom, y2: plot.bottom}));
+  return nodes;
+}
+
+/** @param {RegrowthView} view @param {Scale} x @param {Scale} y */
+function usualCurves({usual, em}, x, y) {
+  if (usual.t.length === 0) return [];
+  const at = usual.t.map(x);
+  const hatch = freshId();
+  const size = 0.5 * em;
+  return [
+    svg(
+      'defs',
+      {},
+      svg(
+        'pattern',
+        {id: hatch, width: size, height: size, patternUnits: 'userSpaceOnUse', patternTransform: 'rotate(45)'},
+        svg('line', {class: 'usual-hatch', x1: 0, x2: 0, y1: 0, y2: size}),
+      ),
+    ),
+    svg('path', {class: 'usual-ground', d: bandPath(at, usual.low.map(y), usual.high.map(y))}),
+    svg('path', {class: 'usual-band', fill: `url(#${hatch})`, d: bandPath(at, usual.low.map(y), usual.high.map(y))}),
+    svg('path', {class: 'usual-line', d: linePath(at, usual.middle.map(y))}),
+  ];
+}
+
+/** Solid as far as data reach, dashed where it is expectation. @param {Regrowth} r @param {Scale} x @param {Scale} y */
+function ownCurves(r, x, y) {
+  const reach = r.final ? r.t.length - 1 : r.t.findIndex((t) => t >= r.known_until);
+  const split = reach < 0 ? r.t.length - 1 : reach;
+  const at = r.t.map(x);
+  const part = (/** @type {number[]} */ values, /** @type {number} */ from, /** @type {number} */ to) => values.slice(from, to + 1);
+  const band = (/** @type {number} */ from, /** @type {number} */ to) =>
+    bandPath(part(at, from, to), part(r.low.map(y), from, to), part(r.high.map(y), from, to));
+  const line = (/** @type {number} */ from, /** @type {number} */ to) => linePath(part(at, from, to), part(r.share.map(y), from, to));
+  return [
+    svg('path', {class: 'own-band own-expected', d: band(split, r.t.length - 1)}),
+    svg('path', {class: 'own-line own-expected', d: line(split, r.t.length - 1)}),
+    svg('path', {class: 'own-band', d: band(0, split)}),
+    svg('path', {class: 'own-line', d: line(0, split)}),
+  ];
+}
+
+/** @param {Regrowth} r @param {Scale} x @param {{top: number, bottom: number}} flap */
+function flapCurve(r, x, flap) {
+  if (r.flap.t.length < 2) return [];
+  const y = scale(0, 1, flap.bottom, flap.top);
+  const at = r.flap.t.map(x);
+  const values = r.flap.position.map(y);
+  return [
+    svg('path', {class: 'flap-area', d: bandPath(at, values.map(() => flap.bottom), values)}),
+    svg('path', {class: 'flap-line', d: linePath(at, values)}),
+  ];
+}
+
+/** The instant of 95 %, with its interval. @param {RegrowthView} view @param {Scale} x @param {Scale} y @param {Box} plot */
+function instant95({closure: c, regrowth: r}, x, y, plot) {
+  if (!c || !r.shut || c.t95 === null || c.t95_low === null || c.t95_high === null) return [];
+  const high = Math.min(x(c.t95_high), plot.right);
+  return [
+    svg('line', {class: 'own-whisker', x1: x(c.t95_low), x2: high, y1: y(0.95), y2: y(0.95)}),
+    mark('full', Math.min(x(c.t95), plot.right), y(0.95), 5),
+  ];
+}
+
+/**
+ * The brakes' line, what was missing on it, and both in words where the plot is empty: low, on the roomier side.
+ * @param {RegrowthView} view @param {Scale} x @param {Scale} y @param {Box} plot @param {{bottom: number}} flap
+ */
+function brakes({closure: c, regrowth: r, units, em}, x, y, plot, flap) {
+  if (!c || c.time_brake === null || !r.shut) return [];
+  const t = c.time_brake - r.time_shut;
+  const at = x(t);
+  if (at > plot.right) {
+    return [svg('text', {class: 'brake-text', x: plot.right, y: plot.bottom - 0.6 * em, 'text-anchor': 'end'}, `brakes ${span(t)} after shut →`)];
+  }
+  const share = Math.min(1, valueAt(r.t, r.share, t));
+  const when = t >= 0 ? `brakes on ${span(t)} after shut` : `brakes on ${span(-t)} before shut`;
+  const missing = c.shortfall ? `${quantityText(c.shortfall, units, 'force')} missing` : '';
+  // A bold letter is some 0.95 em wide at the larger size; what does not fit on the right goes to the left.
+  const right = plot.right - at > Math.max(missing.length * 0.95, when.length * 0.68) * em;
+  const text = {x: right ? at + 0.6 * em : at - 0.6 * em, 'text-anchor': right ? 'start' : 'end'};
+  return [
+    svg('line', {class: 'brake-line', x1: at, x2: at, y1: plot.top, y2: flap.bottom}),
+    Number.isFinite(share) ? svg('line', {class: 'missing-bar', x1: at, x2: at, y1: y(share), y2: y(1)}) : null,
+    svg('text', {class: 'missing-text', ...text, y: plot.bottom - 2.1 * em}, missing),
+    svg('text', {class: 'brake-text', ...text, y: plot.bottom - 0.6 * em}, when),
+  ].filter((node) => node !== null);
+}
