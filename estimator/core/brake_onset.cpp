@@ -41,10 +41,16 @@ std::optional<double> BrakeOnset::pressure(double time_s, double pressure_pa) {
 
 std::optional<double> BrakeOnset::acceleration(double time_s, double accel_mps2,
                                                double accel_without_brakes_mps2) {
-    if (have_pressure_) return std::nullopt;
     const double beyond = accel_mps2 - accel_without_brakes_mps2;
     const double share = std::min((time_s - smooth_time_s_) / kSmoothing_s, 1.0);
     smooth_mps2_ += share * (beyond - smooth_mps2_);
+    if (have_pressure_) {
+        const bool disagrees = !braking_ && smooth_mps2_ < -2.0 * kOnset_mps2;
+        disagrees_s_ = disagrees ? disagrees_s_ + std::min(time_s - smooth_time_s_, kSmoothing_s) : 0.0;
+        smooth_time_s_ = time_s;
+        return std::nullopt;
+    }
+    disagrees_s_ = 0.0;
     smooth_time_s_ = time_s;
     if (!braking_ && smooth_mps2_ < -kOnset_mps2) {
         braking_ = true;

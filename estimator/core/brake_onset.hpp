@@ -18,10 +18,16 @@ class BrakeOnset {
     // The pressure is not to be had any more: acceleration takes over until it comes again.
     void pressure_lost() { have_pressure_ = false; }
 
+    // The car decelerates as only brakes can while the pressure says that they are off.
+    [[nodiscard]] bool pressure_disagrees() const { return disagrees_s_ > kDisagrees_s; }
+
     [[nodiscard]] bool braking() const { return braking_; }
 
   private:
+    static constexpr double kDisagrees_s = 0.08;
+
     bool braking_ = false;
+    double disagrees_s_ = 0.0;
     bool have_pressure_ = false;
     double rest_pa_ = 0.0;  // reading with the brakes off
     double before_time_s_ = 0.0;

@@ -31,9 +31,27 @@ constexpr double kWindSd_mps = 2.0;      // wind that areas carry where air spee
 constexpr double kLoadGainSd = 0.01;     // a load sensor's gain against the weight it was zeroed with
 constexpr double kSlipLag_s =
     0.06;  // common practice, no source: tyre relaxation length over speed, wheel inertia
-constexpr double kSlipUnsure = 0.010;  // relative speed error for a force of one weight not yet followed
-constexpr double kSpeedGatedFor_s = 1.0;
+constexpr double kSlipUnsure = 0.010;     // relative speed error for a force of one weight not yet followed
 constexpr double kMostAccel_mps2 = 30.0;  // how far off the speed may be after a pause
+constexpr double kAccelZLess = 2.0;       // noise of accel_z over its white part
+constexpr double kAreaUnsure_m2 = 0.2;
+constexpr double kDragWhole =
+    0.012;  // mass, accelerometer and drive force together, relative to the drag area
+constexpr double kSpeedGate = 8.0;
+constexpr double kSpeedReturnGate = 3.0;  // for a speed that was named
+constexpr double kSpeedAlone_s = 1.0;     // then a refused speed is believed where there is no accelerometer
+constexpr double kSpeedCoasts_s = 20.0;   // the accelerometer alone holds the speed for so long
+constexpr double kInnovationMemory_s = 0.1;
+constexpr double kReconsider_s = 1.0;
+constexpr double kAccelAgrees_mps2 = 1.0;
+constexpr double kDragSettle_s = 0.4;  // drive force: mean residual over so long
+constexpr double kDragOff = 0.13;      // beyond so many weights it is wrong
+constexpr double kPitotSettle_s = 0.5;
+constexpr double kPitotOff = 0.09;      // dynamic pressure against the downforce, relative
+constexpr double kNoBrakes_mps2 = 2.5;  // decelerating by no more than this beyond drag: the brakes are off
+constexpr double kPitotJump_mps =
+    6.0;  // the air speed leaves the speed over ground by so much at once: not wind
+constexpr double kPitotMean_s = 0.4;
 constexpr double kDragGate = 4.0;
 constexpr double kDragFrom_mps = 30.0;  // below, drag drowns in the other forces
 constexpr double kSlowFrom_mps = 20.0;
@@ -142,6 +160,7 @@ void Engine::step_longitudinal(const Frame& frame, std::uint64_t admitted, doubl
         have_accel_x_ = false;
         speed_time_s_ = 0.0;
     }
+    reconsider_accel_x(frame);
     if (has(admitted, Channel::accel_x)) {
         have_accel_x_ = true;
         accel_x_mps2_ = frame.get(Channel::accel_x);
@@ -154,30 +173,10 @@ void Engine::step_longitudinal(const Frame& frame, std::uint64_t admitted, doubl
                                      std::max(intake_.health()[index(Channel::accel_x)].interval_s, 1e-3)
                                : 4.0;
     longitudinal_.predict(dt_s, accel_x_mps2_, density + 1e-4);
-    if (has(admitted, Channel::speed)) {
+    if (heard(frame, admitted, Channel::speed)) {
         const double measured = frame.get(Channel::speed);
-        // Slip follows the tyre force with the wheels' and the tyres' lag: while the force changes it is
-        // unsure.
-        const double weight_n = mass_kg() * kGravity;
         const double since_s = std::max(intake_.health()[index(Channel::speed)].interval_s, 1e-3);
-        slip_force_n_ += std::min(since_s / kSlipLag_s, 1.0) * (tyre_force_x_n() - slip_force_n_);
-        const double unsure = kSlipUnsure * measured * std::abs(tyre_force_x_n() - slip_force_n_) / weight_n;
-        const double noise = std::hypot(std::max(intake_.noise_sd(Channel::speed), 0.02), 0.03, unsure);
-        const auto innovation = longitudinal_.update_speed(measured, slip_force_n_, weight_n, noise, 8.0);
-        MeasurementStatus& status = intake_.health()[index(Channel::speed)].status;
-        status.predicted = measured - innovation.value;
-        status.innovation = innovation.value;
-        status.innovation_variance = innovation.variance;
-        status.test_ratio = square(innovation.value) / (64.0 * innovation.variance);
-        status.result = status.test_ratio <= 1.0 ? FusionResult::used : FusionResult::gated;
-        if (status.result == FusionResult::gated) {
-            ++intake_.health()[index(Channel::speed)].gated;
-            // Either the sensor has jumped or the filter has lost the car: after a while the sensor is believed.
-            speed_gated_s_ += since_s;
-            if (speed_gated_s_ > kSpeedGatedFor_s) longitudinal_.restart(measured);
-        } else {
-            speed_gated_s_ = 0.0;
-        }
+        fuse_speed(measured, since_s);
         if (!have_accel_x_) {  // the derivative stands in for the accelerometer
             const double since = time_s - speed_time_s_;
             if (speed_time_s_ > 0.0 && since > 0.0 && since < 0.2) {
@@ -195,23 +194,33 @@ void Engine::step_longitudinal(const Frame& frame, std::uint64_t admitted, doubl
     }
     if (has(admitted, Channel::pitot_pressure)) {
         const double ground = 0.5 * air_density_kgpm3_ * square(longitudinal_.speed_mps());
-        if (longitudinal_.speed_mps() > 15.0) {
+        const double speed = longitudinal_.speed_mps();
+        if (speed > 15.0) {
             const double ratio = frame.get(Channel::pitot_pressure) / ground;
             const double interval =
                 std::max(intake_.health()[index(Channel::pitot_pressure)].interval_s, 1e-3);
+            if (speed > PitotCalibration::kFrom_mps) {
+                const double turn = have_heading_ ? 0.0 : std::abs(accel_y_mps2_) / speed * interval;
+                pitot_calibration_.learn(ratio, speed, course_rad_, turn, interval);
+            }
             const double share = have_pitot_ ? std::min(interval / kPitotSmoothing_s, 1.0) : 1.0;
             if (!have_pitot_) chassis_.wind_is_measured();
-            pitot_ratio_ = std::clamp(pitot_ratio_ + share * (ratio - pitot_ratio_), 0.5, 2.0);
+            pitot_ratio_ = std::clamp(
+                pitot_ratio_ + share * (ratio / pitot_calibration_.scale() - pitot_ratio_), 0.5, 2.0);
             have_pitot_ = true;
         } else {
             pitot_ratio_ = 1.0;
         }
     }
-    if (has(admitted, Channel::drive_force)) {
+    if (heard(frame, admitted, Channel::drive_force)) {
         drive_force_before_n_ = drive_force_n_;
         drive_force_n_ = frame.get(Channel::drive_force);
         const bool steady = std::abs(drive_force_n_ - drive_force_before_n_) < 0.03 * mass_kg() * kGravity;
-        if (steady && !brakes_.braking() && accel_x_count_ > 0.0 && have_accel_x_ &&
+        const bool no_brakes =
+            !brakes_.braking() &&
+            accel_x_mps2_ >
+                -dynamic_pressure_pa() * longitudinal_.filter().x[kDragArea] / mass_kg() - kNoBrakes_mps2;
+        if (steady && no_brakes && accel_x_count_ > 0.0 && have_accel_x_ &&
             longitudinal_.speed_mps() > kDragFrom_mps && std::abs(accel_y_mps2_) < kStraight_mps2 &&
             !tracker_.bank().running()) {
             LongitudinalFilter::DragInput in;
@@ -226,10 +235,65 @@ void Engine::step_longitudinal(const Frame& frame, std::uint64_t admitted, doubl
             in.mass_kg = mass_kg();
             const double accel_sd = std::max(accel_noise, 0.05) / std::sqrt(accel_x_count_);
             in.noise_sd_n = std::hypot(in.mass_kg * accel_sd, std::max(0.10 * in.mass_kg * kGravity, 1.0));
-            (void)longitudinal_.update_drag(in, kDragGate);
+            const auto innovation = longitudinal_.update_drag(in, kDragGate);
+            const double interval = std::max(intake_.health()[index(Channel::drive_force)].interval_s, 1e-3);
+            drag_off_n_ += std::min(interval / kDragSettle_s, 1.0) * (innovation.value - drag_off_n_);
+            drag_refusal_.add(std::abs(drag_off_n_) > kDragOff * in.mass_kg * kGravity, interval);
+            if (drag_refusal_.wrong()) distrust(Channel::drive_force, Fault::jumped);
+            if (drag_refusal_.right()) trust_again(Channel::drive_force, Fault::jumped);
         }
         accel_x_sum_ = accel_x_count_ = 0.0;
     }
+}
+
+void Engine::fuse_speed(double measured_mps, double since_s) {
+    // Slip follows the tyre force with the wheels' and the tyres' lag: while the force changes it is unsure.
+    const double weight_n = mass_kg() * kGravity;
+    slip_force_n_ += std::min(since_s / kSlipLag_s, 1.0) * (tyre_force_x_n() - slip_force_n_);
+    const double unsure = kSlipUnsure * measured_mps * std::abs(tyre_force_x_n() - slip_force_n_) / weight_n;
+    const double noise = std::hypot(std::max(intake_.noise_sd(Channel::speed), 0.02), 0.03, unsure);
+    const double gate = usable(Channel::speed) ? kSpeedGate : kSpeedReturnGate;
+    const auto innovation = longitudinal_.update_speed(measured_mps, slip_force_n_, weight_n, noise, gate);
+    MeasurementStatus& status = intake_.health()[index(Channel::speed)].status;
+    status.predicted = measured_mps - innovation.value;
+    status.innovation = innovation.value;
+    status.innovation_variance = innovation.variance;
+    status.test_ratio = square(innovation.value / gate) / innovation.variance;
+    const bool refused = status.test_ratio > 1.0;
+    status.result = refused ? FusionResult::gated : FusionResult::used;
+    speed_refusal_.add(refused, since_s);
+    if (!refused) {
+        last_speed_s_ = static_cast<double>(time_ns_) * 1e-9;
+        if (speed_refusal_.right()) trust_again(Channel::speed, Fault::jumped);
+    } else {
+        ++intake_.health()[index(Channel::speed)].gated;
+        // A speed that jumps leaves the prediction at once; an accelerometer that is off leads it away bit by
+        // bit.
+        if (speed_refusal_.begins())
+            refused_by_drift_ = std::abs(speed_innovation_before_) > 0.3 * std::abs(innovation.value);
+        if (speed_refusal_.wrong() && refused_by_drift_ && have_accel_x_) {
+            distrust(Channel::accel_x, Fault::jumped);
+            longitudinal_.restart(measured_mps);
+            speed_refusal_.clear();
+        } else if (speed_refusal_.wrong()) {
+            distrust(Channel::speed, Fault::jumped);
+        }
+        // Without an accelerometer there is nothing else to believe for long.
+        if (!have_accel_x_ && speed_refusal_.refused_s() > kSpeedAlone_s) longitudinal_.restart(measured_mps);
+    }
+    speed_innovation_before_ +=
+        std::min(since_s / kInnovationMemory_s, 1.0) * (innovation.value - speed_innovation_before_);
+}
+
+// An accelerometer that was named is held against the speed's derivative until it agrees again.
+void Engine::reconsider_accel_x(const Frame& frame) {
+    const ChannelHealth& h = intake_.health()[index(Channel::accel_x)];
+    if (h.trust != Trust::distrusted || h.fault != Fault::jumped || !frame.has(Channel::accel_x)) return;
+    const double off = frame.get(Channel::accel_x) - accel_x_mps2_;
+    if (!std::isfinite(off)) return;
+    accel_x_off_mps2_ += std::min(h.interval_s / kReconsider_s, 1.0) * (off - accel_x_off_mps2_);
+    accel_x_refusal_.add(std::abs(accel_x_off_mps2_) > kAccelAgrees_mps2, h.interval_s);
+    if (accel_x_refusal_.right()) trust_again(Channel::accel_x, Fault::jumped);
 }
 
 void Engine::find_brakes(const Frame& frame, std::uint64_t admitted) {
@@ -237,9 +301,15 @@ void Engine::find_brakes(const Frame& frame, std::uint64_t admitted) {
     std::optional<double> onset;
     if (has(admitted, Channel::brake_pressure))
         onset = brakes_.pressure(time_s, frame.get(Channel::brake_pressure));
-    if (!onset && has(admitted, Channel::accel_x)) {
+    if (!onset && (has(admitted, Channel::accel_x) || (!have_accel_x_ && has(admitted, Channel::speed)))) {
         const double drag = dynamic_pressure_pa() * longitudinal_.filter().x[kDragArea];
         onset = brakes_.acceleration(time_s, accel_x_mps2_, -drag / mass_kg());
+    }
+    if (brakes_.pressure_disagrees()) distrust(Channel::brake_pressure, Fault::disagrees);
+    constexpr double kAlive_pa = 1e6;
+    if (brakes_.braking() && frame.has(Channel::brake_pressure) &&
+        frame.get(Channel::brake_pressure) > kAlive_pa) {
+        trust_again(Channel::brake_pressure, Fault::disagrees);
     }
     if (!onset) return;
     const double distance = lap_distance_m_ - (time_s - *onset) * longitudinal_.speed_mps();
@@ -355,7 +425,7 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
     fuse_height(rear_heights_, rear_road_, kRoadRear, frame, admitted, rear_watch_.roll_rad(accel_y_mps2_));
     stand_in_for_height(front_heights_, front_watch_, kRoadFront, time_s, front);
     stand_in_for_height(rear_heights_, rear_watch_, kRoadRear, time_s, rear);
-    if (has(admitted, Channel::accel_z)) fuse_accel_z(time_s, frame.get(Channel::accel_z));
+    if (heard(frame, admitted, Channel::accel_z)) fuse_accel_z(frame.get(Channel::accel_z));
 }
 
 void Engine::fuse_height(AxleHeights& heights, RoadTuning& tuning, ChassisState road, const Frame& frame,
@@ -416,23 +486,32 @@ void Engine::stand_in_for_height(AxleHeights& heights, const AxleWatch& watch, C
     filter.apply(dh - model.predict(filter.x));
 }
 
-void Engine::fuse_accel_z(double time_s, double measured_mps2) {
-    (void)time_s;
+void Engine::fuse_accel_z(double measured_mps2) {
     auto& filter = chassis_.filter();
     const ChassisStep& step = chassis_.last_step();
     const auto h = AccelZModel::J_accel_state(step);
     const double sd = std::max(intake_.noise_sd(Channel::accel_z), 0.05);
     Innovation<double> innovation{measured_mps2 - AccelZModel::predict(step), 0.0};
-    innovation.variance = filter.expect(h, square(sd) + square(0.1));
+    innovation.variance = filter.expect(h, square(kAccelZLess * sd));
     const bool closing = tracker_.bank().running();
     const double gate = closing ? kGateClosing : kGate;
     ChannelHealth& health = intake_.health()[index(Channel::accel_z)];
     health.status.predicted = measured_mps2 - innovation.value;
     health.status.innovation = innovation.value;
     health.status.innovation_variance = innovation.variance;
-    health.status.test_ratio = square(innovation.value) / (square(gate) * innovation.variance);
+    // Refused by its own noise: what it is trusted less for is what keeps its sign (offset, vibration).
+    health.status.test_ratio = square(innovation.value) /
+                               (square(gate) * (innovation.variance - square(kAccelZLess * sd) + square(sd)));
     const bool use = health.status.test_ratio <= 1.0;
     health.status.result = use ? FusionResult::used : FusionResult::gated;
+    accel_z_refusal_.add(!use, health.interval_s);
+    if (accel_z_refusal_.wrong() && health.trust == Trust::good) {
+        distrust(Channel::accel_z, Fault::jumped);
+        // What it has led the areas to is forgotten.
+        filter.add_noise(kAreaFront, square(kAreaUnsure_m2));
+        filter.add_noise(kAreaRear, square(kAreaUnsure_m2));
+    }
+    if (accel_z_refusal_.right()) trust_again(Channel::accel_z, Fault::jumped);
     if (!use) {
         ++health.gated;
         return;
@@ -482,6 +561,69 @@ AeroNow Engine::aero_now(double time_s) const {
     return now;
 }
 
+// A channel named for having jumped is heard on, to notice that it is right again; its filter refuses what is
+// wrong.
+bool Engine::heard(const Frame& frame, std::uint64_t admitted, Channel c) const {
+    if (has(admitted, c)) return true;
+    const ChannelHealth& h = intake_.health()[index(c)];
+    return h.trust == Trust::distrusted && h.fault == Fault::jumped && frame.has(c) &&
+           std::isfinite(frame.get(c));
+}
+
+// The pitot against the downforce that the loads show: both go with the square of the same air speed.
+void Engine::watch_pitot(double elapsed_s) {
+    const ChannelHealth& h = intake_.health()[index(Channel::pitot_pressure)];
+    if (h.samples > 0 && longitudinal_.speed_mps() > 25.0) {
+        const double ground_pa = 0.5 * air_density_kgpm3_ * square(longitudinal_.speed_mps());
+        const double headwind =
+            longitudinal_.speed_mps() * (std::sqrt(std::max(pitot_newest_pa_, 0.0) / ground_pa) - 1.0);
+        if (pitot_seen_)
+            pitot_jump_.add(std::abs(headwind - pitot_headwind_mps_) > kPitotJump_mps, elapsed_s);
+        // While it is named, the mean stays what it was: the channel returns when it comes back to it.
+        if (!pitot_seen_) pitot_headwind_mps_ = headwind;
+        if (!pitot_jump_.wrong())
+            pitot_headwind_mps_ += std::min(elapsed_s / kPitotMean_s, 1.0) * (headwind - pitot_headwind_mps_);
+        pitot_seen_ = true;
+        if (pitot_jump_.wrong()) distrust(Channel::pitot_pressure, Fault::jumped);
+    }
+    const bool steady = longitudinal_.speed_mps() > 40.0 && !brakes_.braking() &&
+                        !tracker_.bank().running() && std::abs(accel_y_mps2_) < 8.0 &&
+                        (missing_open_ < 0.01 || missing_open_ > 0.99);
+    if (h.samples == 0 || !steady || !converged()) return;
+    const auto& x = chassis_.filter().x;
+    const ChassisConstants& c = chassis_.constants();
+    const double measured_n = load_front_n_ + load_rear_n_ - c.weight_front_n - c.weight_rear_n -
+                              x[kLoadOffsetFront] - x[kLoadOffsetRear] +
+                              kGravity * (car_.mass_kg.value - mass_kg());
+    const double area =
+        x[kAreaFront] + x[kAreaRear] + x[kSlopeFront] * front_heights_.smooth_dh_m() +
+        x[kSlopeRear] * rear_heights_.smooth_dh_m() -
+        missing_open_ *
+            (x[kFlapAreaFront] + x[kFlapAreaRear] * chassis_.flap_height_factor(rear_heights_.smooth_dh_m()));
+    if (measured_n < 1000.0) return;
+    const double off = pitot_newest_pa_ / pitot_calibration_.scale() * area / measured_n - 1.0;
+    pitot_off_ += std::min(elapsed_s / kPitotSettle_s, 1.0) * (off - pitot_off_);
+    pitot_refusal_.add(std::abs(pitot_off_) > kPitotOff || pitot_calibration_.broken(), elapsed_s);
+    if (pitot_refusal_.wrong()) distrust(Channel::pitot_pressure, Fault::jumped);
+    if (pitot_refusal_.right() && pitot_jump_.right()) trust_again(Channel::pitot_pressure, Fault::jumped);
+}
+
+void Engine::distrust(Channel c, Fault fault) {
+    ChannelHealth& h = intake_.health()[index(c)];
+    if (h.trust != Trust::good) return;
+    h.trust = Trust::distrusted;
+    h.fault = fault;
+    h.since_ns = time_ns_;
+}
+
+void Engine::trust_again(Channel c, Fault fault) {
+    ChannelHealth& h = intake_.health()[index(c)];
+    if (h.trust != Trust::distrusted || h.fault != fault) return;
+    h.trust = Trust::good;
+    h.fault = Fault::none;
+    h.since_ns = time_ns_;
+}
+
 bool Engine::usable(Channel c) const {
     const ChannelHealth& h = intake_.health()[index(c)];
     return h.trust == Trust::good &&
@@ -495,6 +637,9 @@ void Engine::watch_sensors(const Frame& frame) {
     if (frame.has(Channel::accel_y) && std::isfinite(frame.get(Channel::accel_y))) {
         accel_y_sum_ += frame.get(Channel::accel_y);
         accel_y_count_ += 1.0;
+    }
+    if (frame.has(Channel::pitot_pressure) && std::isfinite(frame.get(Channel::pitot_pressure))) {
+        pitot_newest_pa_ = frame.get(Channel::pitot_pressure);
     }
     if (time_s < next_watch_s_) return;
     const double elapsed = std::clamp(time_s - watched_s_, AxleWatch::kEvery_s, 5.0 * AxleWatch::kEvery_s);
@@ -517,6 +662,7 @@ void Engine::watch_sensors(const Frame& frame) {
     }
     front_watch_.judge(elapsed, frame.time_ns, longitudinal_.speed_mps(), accel_y, lateral, health);
     rear_watch_.judge(elapsed, frame.time_ns, longitudinal_.speed_mps(), accel_y, lateral, health);
+    watch_pitot(elapsed);
     watch_needed(frame.time_ns);
     tell_distrust(frame.time_ns);
 }
@@ -534,8 +680,10 @@ void Engine::watch_needed(std::int64_t time_ns) {
     const bool rear_height = rear_heights_.age_s(time_s) < settings_.stale_s;
     const bool front_load = usable(Channel::load_fl) || usable(Channel::load_fr);
     const bool rear_load = usable(Channel::load_rl) || usable(Channel::load_rr);
-    const bool early = time_s < start_s_ + settings_.stale_s;  // channels have their first sample when their turn comes
-    watch(Channel::speed, early || usable(Channel::speed));
+    const bool early =
+        time_s < start_s_ + settings_.stale_s;  // channels have their first sample when their turn comes
+    const bool speed_held = have_accel_x_ && time_s - last_speed_s_ < kSpeedCoasts_s;
+    watch(Channel::speed, early || usable(Channel::speed) || speed_held);
     watch(Channel::flap_position, early || usable(Channel::flap_position));
     watch(Channel::load_fl, early || front_load || front_height);
     watch(Channel::load_rl, early || rear_load || rear_height);
@@ -546,7 +694,7 @@ void Engine::tell_distrust(std::int64_t time_ns) {
     for (std::size_t i = 0; i < kChannelCount; ++i) {
         const std::uint64_t bit = std::uint64_t{1} << i;
         const ChannelHealth& h = intake_.health()[i];
-        const bool bad = h.trust == Trust::distrusted;
+        const bool bad = h.trust == Trust::distrusted || h.fault == Fault::noisy;
         if (bad && (told_ & bit) == 0) {
             alarms_.push(Alarm{AlarmKind::sensor_distrusted, time_ns, 0, static_cast<Channel>(i), 1.0, {}});
         }
@@ -618,7 +766,7 @@ const Estimate& Engine::estimate() {
     // Wind where the air speed is not measured, and the gain of the load sensors, move an area as a whole.
     const double wind =
         have_pitot_ ? 0.0 : 2.0 * std::sqrt(wind_variance_m2ps2_) / std::max(e.speed_mps, 5.0);
-    const double whole = std::hypot(wind, kLoadGainSd);
+    const double whole = std::hypot(have_pitot_ ? pitot_calibration_.scale_sd() : wind, kLoadGainSd);
     const auto sd_of = [&](const ChassisFilter::Filter::Vector& form, double area, double missing_sd) {
         return std::sqrt(filter.variance_of(form) + square(whole * area) + square(missing_sd));
     };
@@ -627,7 +775,7 @@ const Estimate& Engine::estimate() {
     e.cda_m2 = longitudinal_.drag_area(dh_front, dh_rear, factor_rear * missing.share, missing.share_sd, q,
                                        mass_kg() * kGravity + q * (area_front + area_rear));
     e.cda_m2.value *= wind_factor;
-    e.cda_m2.sd = std::hypot(e.cda_m2.sd, wind * e.cda_m2.value);
+    e.cda_m2.sd = std::hypot(e.cda_m2.sd, std::hypot(wind, kDragWhole) * e.cda_m2.value);
     e.attached = {std::clamp(1.0 - missing.share, 0.0, 1.0), missing.share_sd};
     e.downforce_front_n = {q * area_front, q * e.cla_front_m2.sd};
     e.downforce_rear_n = {q * area_rear, q * e.cla_rear_m2.sd};

@@ -17,7 +17,9 @@
 #include "estimator/core/fixed_queue.hpp"
 #include "estimator/core/flap_motion.hpp"
 #include "estimator/core/intake.hpp"
+#include "estimator/core/long_refusal.hpp"
 #include "estimator/core/longitudinal_filter.hpp"
+#include "estimator/core/pitot_calibration.hpp"
 #include "estimator/core/results.hpp"
 #include "estimator/core/road_tuning.hpp"
 #include "estimator/core/settings.hpp"
@@ -69,8 +71,14 @@ class Engine {
                      std::uint64_t admitted, double roll_rad);
     void stand_in_for_height(AxleHeights& heights, const AxleWatch& watch, ChassisState road, double time_s,
                              const AxleLoads::Load& load);
-    void fuse_accel_z(double time_s, double measured_mps2);
+    void fuse_accel_z(double measured_mps2);
+    void fuse_speed(double measured_mps, double since_s);
+    void reconsider_accel_x(const Frame& frame);
+    void watch_pitot(double elapsed_s);
+    [[nodiscard]] bool heard(const Frame& frame, std::uint64_t admitted, Channel c) const;
     void find_brakes(const Frame& frame, std::uint64_t admitted);
+    void distrust(Channel c, Fault fault);
+    void trust_again(Channel c, Fault fault);
     void watch_sensors(const Frame& frame);
     void watch_needed(std::int64_t time_ns);
     void tell_distrust(std::int64_t time_ns);
@@ -107,7 +115,17 @@ class Engine {
     double drive_force_n_ = 0.0, drive_force_before_n_ = 0.0;
     bool have_accel_x_ = false;
     double slip_force_n_ = 0.0;  // tyre force along x as the slip follows it
-    double speed_gated_s_ = 0.0;
+    LongRefusal speed_refusal_{0.4, 0.5}, accel_x_refusal_{1.0, 3.0}, accel_z_refusal_{0.4, 20.0};
+    LongRefusal drag_refusal_{0.2, 5.0}, pitot_refusal_{0.3, 5.0}, pitot_jump_{0.06, 2.0};
+    bool pitot_seen_ = false;
+    double pitot_headwind_mps_ = 0.0;       // mean of late
+    bool refused_by_drift_ = false;         // the speed left its prediction bit by bit
+    double speed_innovation_before_ = 0.0;  // mean over the last tenth of a second
+    double last_speed_s_ = 0.0;             // source time at which a speed was last used
+    double accel_x_off_mps2_ = 0.0;         // named accelerometer less the speed's derivative
+    double drag_off_n_ = 0.0;               // mean residual of the drag balance
+    PitotCalibration pitot_calibration_;
+    double pitot_newest_pa_ = 0.0, pitot_off_ = 0.0;
     double speed_before_mps_ = 0.0, speed_time_s_ = 0.0;
     double air_density_kgpm3_;
     double wind_variance_m2ps2_;  // mean square of the wind against the car

@@ -41,6 +41,14 @@ bool can_spike(Channel c) {
     }
 }
 
+// Channels whose sensor's noise shows in every sample of a moving car, so that one value for long is a fault.
+// Others rest by nature: pedals and drive at their ends, speed at standstill, slow channels.
+bool can_stick(Channel c, double value) {
+    constexpr double kMoving_mps = 3.0;
+    if (c == Channel::speed) return value > kMoving_mps;
+    return can_spike(c) || c == Channel::flap_position;
+}
+
 }  // namespace
 
 double Intake::age_s(Channel c, std::int64_t now_ns) const {
@@ -84,7 +92,7 @@ bool Intake::admit(Channel c, std::int64_t time_ns, double value) {
         h.status.result = FusionResult::gated;
         return false;
     }
-    learn(l, h, time_ns, value);
+    learn(c, l, h, time_ns, value);
     h.status.result = h.trust == Trust::distrusted ? FusionResult::distrusted : FusionResult::not_tried;
     return h.trust == Trust::good;
 }
@@ -131,7 +139,7 @@ void Intake::expire(std::int64_t now_ns) {
     }
 }
 
-void Intake::learn(Learned& l, ChannelHealth& h, std::int64_t time_ns, double value) {
+void Intake::learn(Channel c, Learned& l, ChannelHealth& h, std::int64_t time_ns, double value) {
     const bool first = h.samples == 0;
     const double since_s = static_cast<double>(time_ns - h.last_time_ns) * 1e-9;
     if (first) {
@@ -159,7 +167,8 @@ void Intake::learn(Learned& l, ChannelHealth& h, std::int64_t time_ns, double va
     // it.
     const double lively_before =
         l.moving_share / std::pow(0.99, static_cast<double>(std::min<std::uint64_t>(l.same_in_a_row, 100)));
-    const bool stuck = l.same_in_a_row >= kStuckSamples && lively_before > kLivelyShare &&
+    const bool stuck = can_stick(c, value) && l.same_in_a_row >= kStuckSamples &&
+                       lively_before > kLivelyShare &&
                        static_cast<double>(time_ns - l.same_since_ns) * 1e-9 > kStuckAfter_s;
     if (h.trust == Trust::distrusted && h.fault == Fault::gone) {
         h.trust = Trust::good;

@@ -42,7 +42,7 @@ class Intake {
     };
     [[nodiscard]] bool is_spike(Learned& learned, ChannelHealth& health, double value, double since_s);
     [[nodiscard]] bool admit(Channel c, std::int64_t time_ns, double value);
-    void learn(Learned& learned, ChannelHealth& health, std::int64_t time_ns, double value);
+    void learn(Channel c, Learned& learned, ChannelHealth& health, std::int64_t time_ns, double value);
 
     HealthTable health_{};
     std::array<Learned, kChannelCount> learned_{};

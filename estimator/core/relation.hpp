@@ -37,7 +37,8 @@ class Relation {
         const double residual = y - predict(x);
         fast_ += std::min(dt_s / kFast_s, 1.0) * (residual - fast_);
         slow_ += std::min(dt_s / kSlow_s, 1.0) * (residual - slow_);
-        const bool calm = std::abs(fast_) < fast_gate() || learned_s_ < kLearnFirst_s;
+        const bool calm =
+            (std::abs(fast_) < fast_gate() && std::abs(slow_) < kSlowCalm * slow_gate()) || !known();
         if (!learn || !calm) return;
         learned_s_ += dt_s;
         const double share = std::min(dt_s / kNoiseMemory_s, 1.0) + (learned_s_ < 5.0 ? dt_s / 5.0 : 0.0);
@@ -75,10 +76,16 @@ class Relation {
     static constexpr double kMemory_s = 100.0;  // of the offset
     static constexpr double kNoiseMemory_s = 40.0;
     static constexpr double kLearnFirst_s = 25.0;
-    static constexpr double kLevels = 7.0;  // mean sizes of a residual that make a gate
+    static constexpr double kSlowCalm = 0.6;  // nearer to the gate than this, nothing is learned any more
+    static constexpr double kLevels = 7.0;    // mean sizes of a residual that make a gate
 
-    [[nodiscard]] double fast_gate() const { return std::max(kLevels * fast_level_, limits_.fast_least); }
-    [[nodiscard]] double slow_gate() const { return std::max(kLevels * slow_level_, limits_.slow_least); }
+    // A rough car is let to be rougher, within bounds: a drift must not widen the gate that is to find it.
+    [[nodiscard]] double fast_gate() const {
+        return std::clamp(kLevels * fast_level_, limits_.fast_least, 2.5 * limits_.fast_least);
+    }
+    [[nodiscard]] double slow_gate() const {
+        return std::clamp(kLevels * slow_level_, limits_.slow_least, 1.5 * limits_.slow_least);
+    }
 
     RelationLimits limits_;
     Filter filter_;

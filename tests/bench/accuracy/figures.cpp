@@ -1,6 +1,7 @@
 // SPDX-License-Identifier: MIT
 #include "tests/bench/accuracy/figures.hpp"
 
+#include <algorithm>
 #include <cmath>
 #include <cstdio>
 
@@ -30,6 +31,29 @@ struct Square {
     [[nodiscard]] double rms() const { return n > 0.0 ? std::sqrt(sum2 / n) : std::nan(""); }
 };
 
+// Which faults were named, after how long, and which sound channels were.
+void count_naming(const OutingResult& r, Figures& f) {
+    const auto faulty = [&](Channel c) {
+        return std::any_of(r.faults.begin(), r.faults.end(),
+                           [&](const sim::Fault& x) { return x.channel == c; });
+    };
+    for (const sim::Fault& fault : r.faults) {
+        ++f.faults;
+        for (const core::Alarm& a : r.alarms) {
+            const double after_s = static_cast<double>(a.time_ns) * 1e-9 - fault.from_s;
+            if (a.kind != core::AlarmKind::sensor_distrusted || a.channel != fault.channel || after_s < 0.0)
+                continue;
+            f.named_after_s =
+                (f.named_after_s * static_cast<double>(f.named) + after_s) / static_cast<double>(f.named + 1);
+            ++f.named;
+            break;
+        }
+    }
+    for (const core::Alarm& a : r.alarms) {
+        if (a.kind == core::AlarmKind::sensor_distrusted && !faulty(a.channel)) ++f.distrusted;
+    }
+}
+
 }  // namespace
 
 Figures figures_of(std::span<const OutingResult> results) {
@@ -40,8 +64,7 @@ Figures figures_of(std::span<const OutingResult> results) {
     for (const OutingResult& r : results) {
         ++f.outings;
         f.invented += r.invented;
-        for (const core::Alarm& a : r.alarms)
-            f.distrusted += a.kind == core::AlarmKind::sensor_distrusted ? 1 : 0;
+        count_naming(r, f);
         wall_s += r.wall_s;
         duration_s += r.duration_s;
         for (const ClosurePair& p : r.closings) {
@@ -142,22 +165,25 @@ std::string closing_rows(const OutingResult& result) {
 }
 
 std::string table_head() {
-    return "scenario                     closings found inv | tau rms    z | t95 bias   rms  in% | slow%  "
+    return "scenario                                 closings found inv | tau rms    z | t95 bias   rms  in% "
+           "| slow%  "
            "oth% part% | "
-           "wrong%  uncl% | short rms    z | front  rear  drag % | in%: f    r    d | distr | x real";
+           "wrong%  uncl% | short rms    z | front  rear  drag % | in%: f    r    d | distr named after s | "
+           "x real";
 }
 
 std::string table_row(const std::string& name, const Figures& f) {
     char line[400];
     std::snprintf(line, sizeof line,
-                  "%-28s %8zu %5zu %3zu | %7.1f %4.2f | %8.1f %5.1f %4.0f | %5.0f %5.1f %5.0f | %6.1f %6.1f "
+                  "%-40s %8zu %5zu %3zu | %7.1f %4.2f | %8.1f %5.1f %4.0f | %5.0f %5.1f %5.0f | %6.1f %6.1f "
                   "| %9.0f %4.2f | "
-                  "%5.2f %5.2f %5.2f  | %6.0f %4.0f %4.0f | %5zu | %6.0f",
+                  "%5.2f %5.2f %5.2f  | %6.0f %4.0f %4.0f | %5zu %2zu/%-2zu %6.1f | %6.0f",
                   name.c_str(), f.closings, f.found, f.invented, f.tau_rms_ms, f.tau_z_rms, f.t95_bias_ms,
                   f.t95_rms_ms, 100 * f.t95_inside, 100 * f.slow_flagged, 100 * f.others_flagged,
                   100 * f.part_flagged, 100 * f.verdict_wrong, 100 * f.verdict_unclear, f.shortfall_rms_n,
                   f.shortfall_z_rms, 100 * f.front_rms, 100 * f.rear_rms, 100 * f.drag_rms,
-                  100 * f.front_inside, 100 * f.rear_inside, 100 * f.drag_inside, f.distrusted, f.times_real);
+                  100 * f.front_inside, 100 * f.rear_inside, 100 * f.drag_inside, f.distrusted, f.named,
+                  f.faults, f.named_after_s, f.times_real);
     return line;
 }
 

@@ -21,7 +21,9 @@ struct Figures {
     double shortfall_rms_n = 0.0, shortfall_z_rms = 0.0;
     double front_rms = 0.0, rear_rms = 0.0, drag_rms = 0.0;  // of the outing's mean, relative
     double front_inside = 0.0, rear_inside = 0.0, drag_inside = 0.0;
-    std::size_t distrusted = 0;  // alarms that a sensor is distrusted
+    std::size_t distrusted = 0;  // alarms that a sensor is distrusted though it has no fault
+    std::size_t faults = 0, named = 0;
+    double named_after_s = 0.0;  // mean
     double times_real = 0.0;     // outing's length over time spent in the engine
 };
 

@@ -38,6 +38,17 @@ session::CarFile workshop_car(const sim::Scenario& scenario) {
     return *car;
 }
 
+sim::Scenario scenario_with_faults(const std::string& name, std::uint64_t seed) {
+    const std::size_t plus = name.find('+');
+    sim::Scenario scenario = sim::make_scenario(name.substr(0, plus), seed);
+    for (std::size_t at = plus; at != std::string::npos;) {
+        const std::size_t next = name.find('+', at + 1);
+        scenario.faults.push_back(sim::parse_fault(name.substr(at + 1, next - at - 1), scenario));
+        at = next;
+    }
+    return scenario;
+}
+
 void match(OutingResult& result, const sim::Outing& outing, const std::vector<core::Closure>& found) {
     std::vector<bool> taken(found.size(), false);
     for (const sim::TruthClosure& truth : outing.closures()) {
@@ -70,7 +81,7 @@ double AreaErrors::mean_error_share() const {
 }
 
 OutingResult run_outing(const std::string& name, std::uint64_t seed) {
-    sim::Outing outing(sim::make_scenario(name, seed));
+    sim::Outing outing(scenario_with_faults(name, seed));
     const session::CarFile car_file = workshop_car(outing.scenario());
     auto bound = session::bind_ride_heights(car_file, outing.info());
     if (!bound) throw std::runtime_error(name + ": " + to_string(bound.errors().front()));
@@ -79,6 +90,7 @@ OutingResult run_outing(const std::string& name, std::uint64_t seed) {
     OutingResult result;
     result.scenario = name;
     result.seed = seed;
+    result.faults = outing.scenario().faults;
     std::vector<core::Closure> found;
     std::vector<core::Estimate> estimates;
     std::int64_t next_ns = 0;

@@ -9,6 +9,7 @@
 
 #include "estimator/core/results.hpp"
 #include "firmware_host/car/parameters.hpp"
+#include "firmware_host/car/sensors.hpp"
 #include "firmware_host/car/truth.hpp"
 
 namespace holdfast::bench {
@@ -39,11 +40,12 @@ struct OutingResult {
     std::size_t invented = 0;
     AreaErrors cla_front, cla_rear, cda;
     std::vector<core::Alarm> alarms;
+    std::vector<sim::Fault> faults;
     double wall_s = 0.0;      // spent in the engine
     double duration_s = 0.0;  // of the outing
 };
 
-// Scenario names as sim::make_scenario() takes them.
+// SCENARIO[+FAULT]...: names as sim::make_scenario() takes them, faults as sim::parse_fault().
 [[nodiscard]] OutingResult run_outing(const std::string& scenario, std::uint64_t seed);
 
 }  // namespace holdfast::bench
