@@ -25,9 +25,21 @@ std::int64_t next_multiple(std::int64_t time_ns, std::int64_t period_ns) {
 Run::Run(const core::Car& car, const core::Settings& settings, double rate_hz, std::vector<Sink*> sinks)
     : engine_(std::make_unique<core::Engine>(car, settings)),
       period_ns_(std::llround(1e9 / rate_hz)),
-      sinks_(std::move(sinks)) {}
+      sinks_(std::move(sinks)) {
+    for (Sink* sink : sinks_) sink->on_begin(*this);
+}
 
 Run::~Run() = default;
+
+const core::Estimate& Run::estimate() {
+    return engine_->estimate();
+}
+const core::HealthTable& Run::health() const {
+    return engine_->health();
+}
+bool Run::regrowth(core::Regrowth& out) {
+    return engine_->regrowth(out);
+}
 
 void Run::step(const Frame& frame) {
     switch (engine_->step(frame)) {
@@ -44,6 +56,7 @@ void Run::step(const Frame& frame) {
     if (end_.frames++ == 0) first_ns_ = next_estimate_ns_ = next_health_ns_ = time_ns;
     last_ns_ = time_ns;
 
+    for (Sink* sink : sinks_) sink->on_frame(frame);
     hand_on_events();
     if (time_ns >= next_estimate_ns_) {
         next_estimate_ns_ = next_multiple(time_ns, period_ns_);

@@ -21,13 +21,13 @@ namespace holdfast::outputs {
 
 inline constexpr double kDefaultRateHz = 50.0;
 
-class Run {
+class Run : private Inquiry {
   public:
     // Estimates are handed on at `rate_hz`: the first one at or after each multiple of the period. The sinks
     // must outlive the run.
     Run(const core::Car& car, const core::Settings& settings, double rate_hz, std::vector<Sink*> sinks);
 
-    ~Run();
+    virtual ~Run();
     Run(const Run&) = delete;
     Run& operator=(const Run&) = delete;
 
@@ -37,6 +37,9 @@ class Run {
     void finish(bool complete, std::string reason = {});
 
   private:
+    const core::Estimate& estimate() override;
+    const core::HealthTable& health() const override;
+    bool regrowth(core::Regrowth& out) override;
     void hand_on_events();
     void hand_on_health(std::int64_t time_ns);
 

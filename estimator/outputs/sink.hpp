@@ -6,7 +6,9 @@
 #include <cstdint>
 #include <string>
 
+#include "estimator/core/regrowth.hpp"
 #include "estimator/core/results.hpp"
+#include "proto/vocabulary/frame.hpp"
 
 namespace holdfast::outputs {
 
@@ -20,9 +22,25 @@ struct RunEnd {
     std::uint64_t out_of_order = 0;  // frames with an earlier time, left out
 };
 
+// What a sink may ask while one of its calls lasts. Asking changes no result.
+class Inquiry {
+  public:
+    [[nodiscard]] virtual const core::Estimate& estimate() = 0;
+    [[nodiscard]] virtual const core::HealthTable& health() const = 0;
+    // The newest closing as a curve; false where there was none. Costs some milliseconds while it is judged.
+    [[nodiscard]] virtual bool regrowth(core::Regrowth& out) = 0;
+
+  protected:
+    ~Inquiry() = default;
+};
+
 class Sink {
   public:
     virtual ~Sink() = default;
+    // Once, before the first frame; the inquiry is good until the run is gone.
+    virtual void on_begin(Inquiry&) {}
+    // Every frame that the engine took, before the calls that it gives rise to.
+    virtual void on_frame(const Frame&) {}
     virtual void on_estimate(const core::Estimate&) {}
     virtual void on_closure(const core::Closure&) {}
     virtual void on_alarm(const core::Alarm&) {}

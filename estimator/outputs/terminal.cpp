@@ -38,28 +38,6 @@ std::string at_brakes(const core::Closure& c) {
     return text + with_sd(c.shortfall_n, 0) + " N missing at the brakes: " + std::string(word(c.verdict));
 }
 
-std::string alarm_words(const core::Alarm& alarm, const StreamInfo& stream) {
-    const std::string closing = "closing " + std::to_string(alarm.closure) + ": ";
-    switch (alarm.kind) {
-        case core::AlarmKind::short_at_brakes:
-            return closing + "downforce short as the brakes came on, " + with_sd(alarm.shortfall_n, 0) +
-                   " N missing (probability short " + fixed(alarm.probability, 2) + ")";
-        case core::AlarmKind::unknown_at_brakes:
-            return closing +
-                   "downforce at the brakes unknown, it could not be computed; do not take it for whole";
-        case core::AlarmKind::slow_reattachment:
-            return closing + "slow reattachment, or not whole (probability slow " +
-                   fixed(alarm.probability, 2) + ")";
-        case core::AlarmKind::data_stale:
-            return "data stale, everything is unknown until they return: " +
-                   channel_name(alarm.channel, stream.ride_height_names);
-        case core::AlarmKind::sensor_distrusted:
-            return "sensor distrusted, left out of the estimate: " +
-                   channel_name(alarm.channel, stream.ride_height_names);
-    }
-    return "unknown alarm";
-}
-
 std::string area_line(const char* name, const AreaMeans& means) {
     const auto text = [](const WeightedMean& mean) {
         const std::optional<core::Quantity> q = mean.mean();
@@ -109,6 +87,28 @@ std::string closure_line(const core::Closure& c) {
             milliseconds(c.closing_time_s) + " ms: " + reattachment(c) + "; " + at_brakes(c);
     if (c.reattachment_known && c.slow) line += ", slow";
     return line;
+}
+
+std::string alarm_words(const core::Alarm& alarm, const StreamInfo& stream) {
+    const std::string closing = "closing " + std::to_string(alarm.closure) + ": ";
+    switch (alarm.kind) {
+        case core::AlarmKind::short_at_brakes:
+            return closing + "downforce short as the brakes came on, " + with_sd(alarm.shortfall_n, 0) +
+                   " N missing (probability short " + fixed(alarm.probability, 2) + ")";
+        case core::AlarmKind::unknown_at_brakes:
+            return closing +
+                   "downforce at the brakes unknown, it could not be computed; do not take it for whole";
+        case core::AlarmKind::slow_reattachment:
+            return closing + "slow reattachment, or not whole (probability slow " +
+                   fixed(alarm.probability, 2) + ")";
+        case core::AlarmKind::data_stale:
+            return "data stale, everything is unknown until they return: " +
+                   channel_name(alarm.channel, stream.ride_height_names);
+        case core::AlarmKind::sensor_distrusted:
+            return "sensor distrusted, left out of the estimate: " +
+                   channel_name(alarm.channel, stream.ride_height_names);
+    }
+    return "unknown alarm";
 }
 
 std::string alarm_line(const core::Alarm& alarm, const StreamInfo& stream) {

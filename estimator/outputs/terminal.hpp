@@ -14,6 +14,8 @@
 namespace holdfast::outputs {
 
 [[nodiscard]] std::string closure_line(const core::Closure& closure);
+// What the alarm says, without its time.
+[[nodiscard]] std::string alarm_words(const core::Alarm& alarm, const StreamInfo& stream);
 [[nodiscard]] std::string alarm_line(const core::Alarm& alarm, const StreamInfo& stream);
 // Several lines: what was seen, what the numbers refer to, what is not to be relied on, where the files lie.
 [[nodiscard]] std::string summary_lines(const Folder& folder, const RunEnd& end);
