@@ -14,9 +14,12 @@ namespace {
 bool counting = false;
 std::size_t allocations = 0;
 
-void* allocate(std::size_t size) {
+void* allocate_or_null(std::size_t size) noexcept {
     if (counting) ++allocations;
-    void* memory = std::malloc(size == 0 ? 1 : size);
+    return std::malloc(size == 0 ? 1 : size);
+}
+void* allocate(std::size_t size) {
+    void* memory = allocate_or_null(size);
     if (memory == nullptr) throw std::bad_alloc();
     return memory;
 }
@@ -41,6 +44,12 @@ void* operator new(std::size_t size, std::align_val_t alignment) {
 }
 void* operator new[](std::size_t size, std::align_val_t alignment) {
     return allocate_aligned(size, alignment);
+}
+void* operator new(std::size_t size, const std::nothrow_t&) noexcept {
+    return allocate_or_null(size);
+}
+void* operator new[](std::size_t size, const std::nothrow_t&) noexcept {
+    return allocate_or_null(size);
 }
 void operator delete(void* memory) noexcept {
     std::free(memory);

@@ -63,5 +63,8 @@ TEST_CASE("coast-down: the filter finds speed, drag area and the accelerometer's
     INFO("drag area " << found.value << " +- " << found.sd << ", true " << truth_m2);
     CHECK(std::abs(found.value - truth_m2) < 3.0 * found.sd);
     CHECK(found.sd < 0.05);  // from 0.6 before
-    CHECK(filter.accel_offset_mps2() == Approx(kOffset_mps2).margin(0.02));
+    // Coasting alone hardly tells the accelerometer's offset from its scale.
+    const double offset_sd = std::sqrt(filter.filter().variance(kAccelOffset));
+    CHECK(std::abs(filter.filter().x[kAccelOffset] - kOffset_mps2) < 3.0 * offset_sd);
+    CHECK(offset_sd < 0.05);
 }
