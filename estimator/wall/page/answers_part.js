@@ -43,7 +43,7 @@ export function answersPart(wall, root) {
     if (closure) {
       const flow = flowAnswer(closure, preferences.units);
       const pace = paceAnswer(outing, closure);
-      show(0, flow, closingName(closure));
+      show(0, flow, (wall.chosen === null ? '' : 'earlier: ') + closingName(closure));
       show(1, pace);
       const words = `${closingName(closure)}: ${flow.word}, ${flow.detail}. ${pace.word}.`;
       if (aloud.textContent !== words) aloud.textContent = words;

@@ -16,15 +16,6 @@ export function valueAt(x, y, t) {
   return y[i - 1] + ((y[i] - y[i - 1]) * (t - x[i - 1])) / (x[i] - x[i - 1]);
 }
 
-/** End of the time axis: far enough for the story, no farther. @param {Regrowth} r @param {Closure|undefined} c */
-function timeEnd(r, c) {
-  const last = r.t[r.t.length - 1];
-  if (!r.final || !c || !c.whole) return last;
-  const brake = c.time_brake === null ? 0 : c.time_brake - r.time_shut + 0.15;
-  const wanted = Math.max(0.4, (c.t95_high ?? 0.5) * 1.25, brake);
-  return Math.min(last, Math.ceil(wanted * 10 - 1e-9) / 10);
-}
-
 /**
  * @typedef {object} RegrowthView
  * @property {Regrowth} regrowth
@@ -36,12 +27,37 @@ function timeEnd(r, c) {
  * @property {number} em px of a line of text
  */
 
+/** What stands beside the brakes' line. @param {RegrowthView} view */
+function brakeWords({closure: c, regrowth: r, units}) {
+  if (!c || c.time_brake === null) return {when: '', missing: '', letters: 0};
+  const t = c.time_brake - r.time_shut;
+  const when = t >= 0 ? `brakes on ${span(t)} after shut` : `brakes on ${span(-t)} before shut`;
+  const missing = c.shortfall ? `${quantityText(c.shortfall, units, 'force')} missing` : '';
+  // Widths in em: a bold letter of the larger size is some 0.95 wide, one of the smaller 0.68.
+  return {when, missing, letters: Math.max(missing.length * 0.95, when.length * 0.68) + 1};
+}
+
+/**
+ * End of the time axis: far enough for the story and for the words right of the brakes' line, no farther.
+ * @param {RegrowthView} view @param {number} room px of the axis
+ */
+function timeEnd(view, room) {
+  const {regrowth: r, closure: c, em} = view;
+  const last = r.t[r.t.length - 1];
+  if (!r.final || !c || !c.whole) return last;
+  const words = Math.min(0.5, (brakeWords(view).letters * em) / room);
+  const brake = c.time_brake === null ? 0 : r.t[0] + (c.time_brake - r.time_shut - r.t[0]) / (1 - words);
+  const wanted = Math.max(0.4, (c.t95_high ?? 0.5) * 1.25, brake);
+  return Math.min(last, Math.ceil(wanted * 10 - 1e-9) / 10);
+}
+
 /** @param {RegrowthView} view @returns {SVGElement} */
 export function regrowthPicture(view) {
   const {regrowth: r, width, height, em} = view;
   const flapHeight = Math.max(2.2 * em, height * 0.13);
-  const plot = {left: 3.6 * em, right: width - 1.0 * em, top: 2.5 * em, bottom: height - flapHeight - 3.4 * em};
-  const x = scale(r.t[0], timeEnd(r, view.closure), plot.left, plot.right);
+  const plot = {left: 3.6 * em, right: width - 1.5 * em, top: 2.5 * em, bottom: height - flapHeight - 3.4 * em};
+  const end = timeEnd(view, plot.right - plot.left);
+  const x = scale(r.t[0], end, plot.left, plot.right);
   const y = scale(0, 1.1, plot.bottom, plot.top);
   const flap = {top: plot.bottom + 0.7 * em, bottom: plot.bottom + 0.7 * em + flapHeight};
   const clip = freshId();
@@ -50,7 +66,7 @@ export function regrowthPicture(view) {
     {class: 'picture regrowth-picture', viewBox: `0 0 ${width} ${height}`, role: 'img', 'aria-label': spoken(view)},
     svg('defs', {}, svg('clipPath', {id: clip}, svg('rect', {x: plot.left, y: 0, width: plot.right - plot.left, height}))),
   );
-  root.append(...axes(view, x, y, plot, flap));
+  root.append(...axes(view, end, x, y, plot, flap));
   const curves = svg('g', {'clip-path': `url(#${clip})`});
   curves.append(...usualCurves(view, x, y), ...ownCurves(r, x, y), ...flapCurve(r, x, flap));
   root.append(curves, ...instant95(view, x, y, plot), ...brakes(view, x, y, plot, flap));
@@ -69,10 +85,9 @@ function spoken({regrowth, closure, usual, units}) {
 /** @typedef {(value: number) => number} Scale */
 /** @typedef {{left: number, right: number, top: number, bottom: number}} Box */
 
-/** @param {RegrowthView} view @param {Scale} x @param {Scale} y @param {Box} plot @param {{top: number, bottom: number}} flap */
-function axes({regrowth: r, closure, em}, x, y, plot, flap) {
+/** @param {RegrowthView} view @param {number} to @param {Scale} x @param {Scale} y @param {Box} plot @param {{top: number, bottom: number}} flap */
+function axes({regrowth: r, em}, to, x, y, plot, flap) {
   const from = r.t[0];
-  const to = timeEnd(r, closure);
   const nodes = [];
   for (const share of [0, 0.25, 0.5, 0.75, 1]) {
     nodes.push(svg('line', {class: share === 1 ? 'whole-line' : 'grid', x1: plot.left, x2: plot.right, y1: y(share), y2: y(share)}));
@@ -85,7 +100,7 @@ function axes({regrowth: r, closure, em}, x, y, plot, flap) {
   nodes.push(svg('line', {class: 'zero-line', x1: x(0), x2: x(0), y1: plot.top, y2: flap.bottom}));
   const since = r.shut ? 'ms since the flap shut' : 'ms since closing was asked for';
   nodes.push(svg('text', {class: 'axis-name', x: plot.right, y: flap.bottom + 2.3 * em, 'text-anchor': 'end'}, since));
-  nodes.push(svg('text', {class: 'axis-name', x: 0.2 * em, y: 1.1 * em}, 'flap’s downforce that is back'));
+  nodes.push(svg('text', {class: 'axis-name', x: 0.2 * em, y: 0.85 * em}, 'flap’s downforce that is back'));
   if (r.chord_time > 0) {
     for (const n of ticks(0, to / r.chord_time, 7)) {
       const at = x(n * r.chord_time);
@@ -163,26 +178,27 @@ function instant95({closure: c, regrowth: r}, x, y, plot) {
 }
 
 /**
- * The brakes' line, what was missing on it, and both in words where the plot is empty: low, on the roomier side.
+ * The brakes' line, what was missing on it, and both in words where the plot is empty: low, right of the line where
+ * there is room.
  * @param {RegrowthView} view @param {Scale} x @param {Scale} y @param {Box} plot @param {{bottom: number}} flap
  */
-function brakes({closure: c, regrowth: r, units, em}, x, y, plot, flap) {
+function brakes(view, x, y, plot, flap) {
+  const {closure: c, regrowth: r, em} = view;
   if (!c || c.time_brake === null || !r.shut) return [];
+  const {when, missing, letters} = brakeWords(view);
   const t = c.time_brake - r.time_shut;
   const at = x(t);
+  const low = {missing: plot.bottom - 2.1 * em, when: plot.bottom - 0.6 * em};
   if (at > plot.right) {
-    return [svg('text', {class: 'brake-text', x: plot.right, y: plot.bottom - 0.6 * em, 'text-anchor': 'end'}, `brakes ${span(t)} after shut →`)];
+    return [svg('text', {class: 'brake-text', x: plot.right, y: low.when, 'text-anchor': 'end'}, `${when} →`)];
   }
   const share = Math.min(1, valueAt(r.t, r.share, t));
-  const when = t >= 0 ? `brakes on ${span(t)} after shut` : `brakes on ${span(-t)} before shut`;
-  const missing = c.shortfall ? `${quantityText(c.shortfall, units, 'force')} missing` : '';
-  // A bold letter is some 0.95 em wide at the larger size; what does not fit on the right goes to the left.
-  const right = plot.right - at > Math.max(missing.length * 0.95, when.length * 0.68) * em;
+  const right = plot.right - at > (letters - 1) * em;
   const text = {x: right ? at + 0.6 * em : at - 0.6 * em, 'text-anchor': right ? 'start' : 'end'};
   return [
     svg('line', {class: 'brake-line', x1: at, x2: at, y1: plot.top, y2: flap.bottom}),
-    Number.isFinite(share) ? svg('line', {class: 'missing-bar', x1: at, x2: at, y1: y(share), y2: y(1)}) : null,
-    svg('text', {class: 'missing-text', ...text, y: plot.bottom - 2.1 * em}, missing),
-    svg('text', {class: 'brake-text', ...text, y: plot.bottom - 0.6 * em}, when),
-  ].filter((node) => node !== null);
+    ...(Number.isFinite(share) ? [svg('line', {class: 'missing-bar', x1: at, x2: at, y1: y(share), y2: y(1)})] : []),
+    svg('text', {class: 'missing-text', ...text, y: low.missing}, missing),
+    svg('text', {class: 'brake-text', ...text, y: low.when}, when),
+  ];
 }

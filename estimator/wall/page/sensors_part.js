@@ -8,7 +8,7 @@ import {FAULT_WORDS} from "./words.js";
 
 /** @typedef {import('./protocol.js').ChannelHealth} ChannelHealth */
 
-const HEADINGS = ['Channel', 'Trust', 'Innovation / gate', 'Last value', 'Rate, Hz', 'Gaps', 'Refused', 'Sign and since when'];
+const HEADINGS = ['Channel', 'Trust', 'Innovation / gate', 'Last value', 'Rate, Hz', 'Gaps', 'Refused'];
 const NUMBERS = ['Last value', 'Rate, Hz', 'Gaps', 'Refused'];
 
 /** Distrusted first, absent last, else as the program lists them. @param {ChannelHealth[]} health */
@@ -53,12 +53,12 @@ function gateWords(h) {
   return `${fixed(Math.sign(h.innovation) * Math.sqrt(h.test_ratio), 2)} of the gate`;
 }
 
-/** @param {ChannelHealth} h */
+/** Trust, and what gave the channel away since when. @param {ChannelHealth} h */
 function storyText(h) {
   if (h.trust === 'absent') return 'not in this log';
-  if (h.trust === 'good') return h.fault === 'none' ? '' : FAULT_WORDS[h.fault];
-  const what = FAULT_WORDS[h.fault] || 'distrusted';
-  return h.since === null ? what : `${what}, since ${clock(h.since)}`;
+  if (h.trust === 'good') return h.fault === 'none' ? 'good' : `good, ${FAULT_WORDS[h.fault]}`;
+  const what = FAULT_WORDS[h.fault];
+  return ['distrusted', what, h.since === null ? '' : `since ${clock(h.since)}`].filter(Boolean).join(', ');
 }
 
 /** Cells of a channel's row, heading first. @param {ChannelHealth} h @param {string} unit @param {import('./units.js').UnitChoice} choice */
@@ -67,13 +67,12 @@ export function sensorRow(h, unit, choice) {
     'tr',
     {class: `sensor sensor-${h.trust}`},
     html('th', {scope: 'row'}, h.name),
-    html('td', {}, icon(h.trust === 'absent' ? 'unknown' : h.trust), h.trust),
+    html('td', {}, icon(h.trust === 'absent' ? 'unknown' : h.trust), storyText(h)),
     html('td', {}, gateRule(h)),
     html('td', {class: 'number'}, valueText(h.value, unit, choice)),
     html('td', {class: 'number'}, h.rate_hz === null ? '–' : fixed(h.rate_hz, h.rate_hz < 10 ? 1 : 0)),
     html('td', {class: 'number'}, fixed(h.gaps, 0)),
     html('td', {class: 'number', title: `gate ${h.gated}, out of range ${h.out_of_range}, not finite ${h.not_finite}, repeated ${h.repeats}`}, fixed(h.gated + h.out_of_range + h.not_finite, 0)),
-    html('td', {}, storyText(h)),
   );
 }
 

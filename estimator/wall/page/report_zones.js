@@ -1,0 +1,62 @@
+// SPDX-License-Identifier: MIT
+// Zones of the report: each with its margins lap by lap and the regrowth of its worst closing.
+import {html} from "./svg.js";
+import {fixed} from "./units.js";
+import {icon} from "./marks.js";
+import {closingName, flowAnswer} from "./words.js";
+import {usualBand, usualMargin, LEAST_FOR_USUAL} from "./usual.js";
+import {zonePicture, zoneRanges} from "./zone_picture.js";
+import {regrowthPicture} from "./regrowth_picture.js";
+
+/** @typedef {import('./protocol.js').Closure} Closure */
+
+const EM = 11;
+
+/** The closing that most was missing from. @param {Closure[]} closures */
+export function worstOf(closures) {
+  return closures.reduce((a, b) => ((b.shortfall?.[0] ?? -Infinity) > (a.shortfall?.[0] ?? -Infinity) ? b : a));
+}
+
+/** @param {import('./outing.js').Outing} outing @param {import('./units.js').UnitChoice} units */
+export function zonesSection(outing, units) {
+  const closures = outing.closuresInOrder().filter((c) => c.zone > 0);
+  const zones = [...new Set(closures.map((c) => c.zone))].sort((a, b) => a - b);
+  const ranges = zoneRanges(closures);
+  const section = html('section', {}, html('h2', {}, 'Zones'));
+  if (zones.length === 0) section.append(html('p', {}, 'No closing was followed by braking.'));
+  else section.append(markKey());
+  for (const zone of zones) section.append(zoneReport(outing, zone, closures.filter((c) => c.zone === zone), ranges, units));
+  return section;
+}
+
+function markKey() {
+  const marks = [['full', 'full'], ['short', 'short'], ['unclear', 'unclear']].map(([mark, word]) => html('span', {}, icon(mark), ` ${word}`));
+  return html(
+    'p',
+    {class: 'key-marks quiet'},
+    ...marks,
+    html('span', {}, icon('full', true), ' framed: slow'),
+    html('span', {}, 'whiskers and bands 95 %, ± one standard uncertainty; hatched: usual'),
+  );
+}
+
+/**
+ * @param {import('./outing.js').Outing} outing @param {number} zone @param {Closure[]} of
+ * @param {ReturnType<typeof zoneRanges>} ranges @param {import('./units.js').UnitChoice} units
+ */
+function zoneReport(outing, zone, of, ranges, units) {
+  const worst = worstOf(of);
+  const usual = usualMargin(of);
+  const sum = usual ? `usual margin ${fixed(usual.middle * 1000, 0)} ms (${fixed(usual.low * 1000, 0)} to ${fixed(usual.high * 1000, 0)})` : `usual not known: fewer than ${LEAST_FOR_USUAL} closings that were not slow`;
+  const margins = zonePicture({zone, closures: of, ranges, chosen: 0, width: 240, height: 230, em: EM});
+  const pair = html('div', {class: 'zone-pair'}, html('figure', {}, margins, html('figcaption', {}, 'Margin to the brakes, s, by lap')));
+  const regrowth = outing.regrowths.get(worst.number);
+  if (regrowth) {
+    const flow = flowAnswer(worst, units);
+    // All of the zone's closings that were not slow: a report looks back at the whole outing.
+    const band = usualBand(outing, zone, Infinity);
+    const picture = regrowthPicture({regrowth, closure: worst, usual: band, units, width: 450, height: 230, em: EM});
+    pair.append(html('figure', {}, picture, html('figcaption', {}, `Its most short: ${closingName(worst)}; ${flow.word.toLowerCase()}, ${flow.detail}`)));
+  }
+  return html('div', {class: 'zone-report'}, html('h3', {}, `Zone ${zone}: ${of.length} closing${of.length === 1 ? '' : 's'}, ${sum}`), pair);
+}
