@@ -94,9 +94,19 @@ Innovation<double> LongitudinalFilter::update_speed(double measured_mps, double 
     return out;
 }
 
+double LongitudinalFilter::air_force_n(const DragInput& in) const {
+    const auto& x = filter_.x;
+    return in.dynamic_pressure_pa * (x[kDragArea] - in.missing * x[kDragFlap] +
+                                     in.dh_front_m * x[kDragSlopeFront] + in.dh_rear_m * x[kDragSlopeRear]);
+}
+
 Innovation<double> LongitudinalFilter::update_drag(const DragInput& in, double gate) {
-    const auto h = J_drag_state(in);
     const double rolling = rolling_resistance_.value * (in.mass_kg * kGravity + in.downforce_n);
+    // The scale error multiplies the acceleration that the forces ask for: the measured one carries this
+    // measurement's own noise, which would be taken for scale.
+    DragInput expected = in;
+    expected.accel_x_mps2 = (in.drive_force_n - rolling - air_force_n(in)) / in.mass_kg;
+    const auto h = J_drag_state(expected);
     const double left = in.drive_force_n - rolling - in.mass_kg * in.accel_x_mps2;
     double predicted = 0.0;
     for (std::size_t i = 0; i < kLongitudinalCount; ++i) predicted += h[i] * filter_.x[i];

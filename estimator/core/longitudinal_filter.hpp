@@ -66,6 +66,8 @@ class LongitudinalFilter {
     [[nodiscard]] static Filter::Vector J_drag_state(const DragInput& input);
 
   private:
+    [[nodiscard]] double air_force_n(const DragInput& input) const;
+
     Filter filter_;
     Quantity rolling_resistance_;
 };
