@@ -44,13 +44,16 @@ constexpr double kSpeedCoasts_s = 20.0;   // the accelerometer alone holds the s
 constexpr double kInnovationMemory_s = 0.1;
 constexpr double kReconsider_s = 1.0;
 constexpr double kAccelAgrees_mps2 = 1.0;
-constexpr double kDragSettle_s = 0.4;  // drive force: mean residual over so long
-constexpr double kDragOff = 0.13;      // beyond so many weights it is wrong
+constexpr double kDragSettle_s = 0.4;     // drive force: mean residual over so long
+constexpr double kDragOff = 0.13;         // beyond so many weights it is wrong
+constexpr double kPitotOff_n = 300.0;     // and by so much more, for what the loads are off
+constexpr double kPitotLearned_s = 40.0;  // before, the areas are not known well enough to judge by
 constexpr double kPitotSettle_s = 0.5;
 constexpr double kPitotOff = 0.09;      // dynamic pressure against the downforce, relative
 constexpr double kNoBrakes_mps2 = 2.5;  // decelerating by no more than this beyond drag: the brakes are off
+constexpr double kPitotJumpFrom_mps = 35.0;
 constexpr double kPitotJump_mps =
-    6.0;  // the air speed leaves the speed over ground by so much at once: not wind
+    8.0;  // the air speed leaves the speed over ground by so much at once: not wind
 constexpr double kPitotMean_s = 0.4;
 constexpr double kDragGate = 4.0;
 constexpr double kDragFrom_mps = 30.0;  // below, drag drowns in the other forces
@@ -235,7 +238,8 @@ void Engine::step_longitudinal(const Frame& frame, std::uint64_t admitted, doubl
             in.mass_kg = mass_kg();
             const double accel_sd = std::max(accel_noise, 0.05) / std::sqrt(accel_x_count_);
             in.noise_sd_n = std::hypot(in.mass_kg * accel_sd, std::max(0.10 * in.mass_kg * kGravity, 1.0));
-            const auto innovation = longitudinal_.update_drag(in, kDragGate);
+            const double gate = usable(Channel::drive_force) ? kDragGate : 0.0;  // named: only looked at
+            const auto innovation = longitudinal_.update_drag(in, gate);
             const double interval = std::max(intake_.health()[index(Channel::drive_force)].interval_s, 1e-3);
             drag_off_n_ += std::min(interval / kDragSettle_s, 1.0) * (innovation.value - drag_off_n_);
             drag_refusal_.add(std::abs(drag_off_n_) > kDragOff * in.mass_kg * kGravity, interval);
@@ -512,10 +516,8 @@ void Engine::fuse_accel_z(double measured_mps2) {
         filter.add_noise(kAreaRear, square(kAreaUnsure_m2));
     }
     if (accel_z_refusal_.right()) trust_again(Channel::accel_z, Fault::jumped);
-    if (!use) {
-        ++health.gated;
-        return;
-    }
+    if (!use) ++health.gated;
+    if (!use || health.trust != Trust::good) return;
     double flap_reaction = 0.0;
     if (closing) {
         for (std::size_t i = 0; i < kFlapAreaRear; ++i)
@@ -573,7 +575,7 @@ bool Engine::heard(const Frame& frame, std::uint64_t admitted, Channel c) const 
 // The pitot against the downforce that the loads show: both go with the square of the same air speed.
 void Engine::watch_pitot(double elapsed_s) {
     const ChannelHealth& h = intake_.health()[index(Channel::pitot_pressure)];
-    if (h.samples > 0 && longitudinal_.speed_mps() > 25.0) {
+    if (h.samples > 100 && longitudinal_.speed_mps() > kPitotJumpFrom_mps) {
         const double ground_pa = 0.5 * air_density_kgpm3_ * square(longitudinal_.speed_mps());
         const double headwind =
             longitudinal_.speed_mps() * (std::sqrt(std::max(pitot_newest_pa_, 0.0) / ground_pa) - 1.0);
@@ -589,7 +591,8 @@ void Engine::watch_pitot(double elapsed_s) {
     const bool steady = longitudinal_.speed_mps() > 40.0 && !brakes_.braking() &&
                         !tracker_.bank().running() && std::abs(accel_y_mps2_) < 8.0 &&
                         (missing_open_ < 0.01 || missing_open_ > 0.99);
-    if (h.samples == 0 || !steady || !converged()) return;
+    const bool learned = static_cast<double>(time_ns_) * 1e-9 > start_s_ + kPitotLearned_s;
+    if (h.samples == 0 || !steady || !converged() || !learned) return;
     const auto& x = chassis_.filter().x;
     const ChassisConstants& c = chassis_.constants();
     const double measured_n = load_front_n_ + load_rear_n_ - c.weight_front_n - c.weight_rear_n -
@@ -603,7 +606,8 @@ void Engine::watch_pitot(double elapsed_s) {
     if (measured_n < 1000.0) return;
     const double off = pitot_newest_pa_ / pitot_calibration_.scale() * area / measured_n - 1.0;
     pitot_off_ += std::min(elapsed_s / kPitotSettle_s, 1.0) * (off - pitot_off_);
-    pitot_refusal_.add(std::abs(pitot_off_) > kPitotOff || pitot_calibration_.broken(), elapsed_s);
+    const double limit = kPitotOff + kPitotOff_n / measured_n;
+    pitot_refusal_.add(std::abs(pitot_off_) > limit || pitot_calibration_.broken(), elapsed_s);
     if (pitot_refusal_.wrong()) distrust(Channel::pitot_pressure, Fault::jumped);
     if (pitot_refusal_.right() && pitot_jump_.right()) trust_again(Channel::pitot_pressure, Fault::jumped);
 }

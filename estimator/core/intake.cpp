@@ -46,6 +46,7 @@ bool can_spike(Channel c) {
 bool can_stick(Channel c, double value) {
     constexpr double kMoving_mps = 3.0;
     if (c == Channel::speed) return value > kMoving_mps;
+    if (c == Channel::drive_force || c == Channel::brake_pressure) return value != 0.0;
     return can_spike(c) || c == Channel::flap_position;
 }
 
