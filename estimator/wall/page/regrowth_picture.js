@@ -27,14 +27,15 @@ export function valueAt(x, y, t) {
  * @property {number} em px of a line of text
  */
 
-/** What stands beside the brakes' line. @param {RegrowthView} view */
-function brakeWords({closure: c, regrowth: r, units}) {
-  if (!c || c.time_brake === null) return {when: '', missing: '', letters: 0};
+/** What stands beside the brakes' line, in px. @param {RegrowthView} view */
+function brakeWords({closure: c, regrowth: r, units, em, width}) {
+  const size = width < 38 * em ? {missing: 1.25 * em, when: em} : {missing: 1.56 * em, when: 1.12 * em};
+  if (!c || c.time_brake === null) return {when: '', missing: '', size, reach: 0};
   const t = c.time_brake - r.time_shut;
   const when = t >= 0 ? `brakes on ${span(t)} after shut` : `brakes on ${span(-t)} before shut`;
   const missing = c.shortfall ? `${quantityText(c.shortfall, units, 'force')} missing` : '';
-  // Widths in em: a bold letter of the larger size is some 0.95 wide, one of the smaller 0.68.
-  return {when, missing, letters: Math.max(missing.length * 0.95, when.length * 0.68) + 1};
+  // A bold letter is some 0.62 of its size wide; and a letter of air on either side.
+  return {when, missing, size, reach: 0.62 * Math.max(missing.length * size.missing, when.length * size.when) + 1.2 * em};
 }
 
 /**
@@ -42,10 +43,10 @@ function brakeWords({closure: c, regrowth: r, units}) {
  * @param {RegrowthView} view @param {number} room px of the axis
  */
 function timeEnd(view, room) {
-  const {regrowth: r, closure: c, em} = view;
+  const {regrowth: r, closure: c} = view;
   const last = r.t[r.t.length - 1];
   if (!r.final || !c || !c.whole) return last;
-  const words = Math.min(0.5, (brakeWords(view).letters * em) / room);
+  const words = Math.min(0.5, brakeWords(view).reach / room);
   const brake = c.time_brake === null ? 0 : r.t[0] + (c.time_brake - r.time_shut - r.t[0]) / (1 - words);
   const wanted = Math.max(0.4, (c.t95_high ?? 0.5) * 1.25, brake);
   return Math.min(last, Math.ceil(wanted * 10 - 1e-9) / 10);
@@ -63,7 +64,7 @@ export function regrowthPicture(view) {
   const clip = freshId();
   const root = svg(
     'svg',
-    {class: 'picture regrowth-picture', viewBox: `0 0 ${width} ${height}`, role: 'img', 'aria-label': spoken(view)},
+    {class: 'picture regrowth-picture', viewBox: `0 0 ${width} ${height}`, 'font-size': em, role: 'img', 'aria-label': spoken(view)},
     svg('defs', {}, svg('clipPath', {id: clip}, svg('rect', {x: plot.left, y: 0, width: plot.right - plot.left, height}))),
   );
   root.append(...axes(view, end, x, y, plot, flap));
@@ -178,27 +179,27 @@ function instant95({closure: c, regrowth: r}, x, y, plot) {
 }
 
 /**
- * The brakes' line, what was missing on it, and both in words where the plot is empty: low, right of the line where
+ * The brakes' line, what was missing on it, and both in words where the plot is empty: low, and right of the line where
  * there is room.
  * @param {RegrowthView} view @param {Scale} x @param {Scale} y @param {Box} plot @param {{bottom: number}} flap
  */
 function brakes(view, x, y, plot, flap) {
   const {closure: c, regrowth: r, em} = view;
   if (!c || c.time_brake === null || !r.shut) return [];
-  const {when, missing, letters} = brakeWords(view);
+  const {when, missing, size, reach} = brakeWords(view);
   const t = c.time_brake - r.time_shut;
   const at = x(t);
   const low = {missing: plot.bottom - 2.1 * em, when: plot.bottom - 0.6 * em};
   if (at > plot.right) {
-    return [svg('text', {class: 'brake-text', x: plot.right, y: low.when, 'text-anchor': 'end'}, `${when} →`)];
+    return [svg('text', {class: 'brake-text', 'font-size': size.when, x: plot.right, y: low.when, 'text-anchor': 'end'}, `${when} →`)];
   }
   const share = Math.min(1, valueAt(r.t, r.share, t));
-  const right = plot.right - at > (letters - 1) * em;
-  const text = {x: right ? at + 0.6 * em : at - 0.6 * em, 'text-anchor': right ? 'start' : 'end'};
+  const beside = plot.right - at > reach - 0.6 * em;
+  const text = beside ? {x: at + 0.6 * em, 'text-anchor': 'start'} : {x: plot.right, 'text-anchor': 'end'};
   return [
     svg('line', {class: 'brake-line', x1: at, x2: at, y1: plot.top, y2: flap.bottom}),
     ...(Number.isFinite(share) ? [svg('line', {class: 'missing-bar', x1: at, x2: at, y1: y(share), y2: y(1)})] : []),
-    svg('text', {class: 'missing-text', ...text, y: low.missing}, missing),
-    svg('text', {class: 'brake-text', ...text, y: low.when}, when),
+    svg('text', {class: 'missing-text', 'font-size': size.missing, ...text, y: low.missing}, missing),
+    svg('text', {class: 'brake-text', 'font-size': size.when, ...text, y: low.when}, when),
   ];
 }

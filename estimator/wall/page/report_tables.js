@@ -27,6 +27,13 @@ function ms(q) {
   return q === null ? '–' : plusMinus(q[0] * 1000, q[1] * 1000, 0);
 }
 
+/** When 95 % was back, or where the flow settles. @param {Closure} c */
+function backText(c) {
+  if (c.t95 === null) return c.plateau === null ? '–' : `settles at ${fixed(c.plateau * 100, 0)} %`;
+  const interval = c.t95_low === null || c.t95_high === null ? '' : ` (${fixed(c.t95_low * 1000, 0)}–${fixed(c.t95_high * 1000, 0)})`;
+  return fixed(c.t95 * 1000, 0) + interval;
+}
+
 /** @param {Closure} c @param {UnitChoice} units @returns {(Node|string)[]} */
 function closureRow(c, units) {
   const force = unitOf(units, 'force');
@@ -38,10 +45,8 @@ function closureRow(c, units) {
     c.zone ? String(c.zone) : '–',
     clock(c.time_command, 2),
     speedText(c.speed, units),
-    c.t95 === null ? '–' : fixed(c.t95 * 1000, 0),
-    c.t95_low === null || c.t95_high === null ? '–' : `${fixed(c.t95_low * 1000, 0)}–${fixed(c.t95_high * 1000, 0)}`,
+    backText(c),
     c.chords === null ? '–' : fixed(c.chords, 0),
-    c.plateau === null ? '–' : fixed(c.plateau * 100, 0),
     ms(c.margin),
     c.shortfall === null ? '–' : plusMinus(c.shortfall[0] * force.per_si, c.shortfall[1] * force.per_si, 0),
     c.probability_short === null ? '–' : fixed(c.probability_short, 2),
@@ -51,7 +56,7 @@ function closureRow(c, units) {
 
 /** @param {Outing} outing @param {UnitChoice} units */
 export function closuresSection(outing, units) {
-  const headings = ['At the brakes', 'No.', 'Lap', 'Zone', 'Asked for', 'Speed', '95 % back, ms', '95 % interval', 'Chords', 'Back, %', 'Margin, ms', `Missing, ${unitOf(units, 'force').word}`, 'P(short)', 'P(slow)'];
+  const headings = ['At the brakes', 'No.', 'Lap', 'Zone', 'Asked for', 'Speed', '95 % back, ms (95 %)', 'Chords', 'Margin, ms', `Missing, ${unitOf(units, 'force').word}`, 'P(short)', 'P(slow)'];
   const closures = outing.closuresInOrder();
   const content = closures.length ? table(headings, closures.map((c) => closureRow(c, units)), 1) : html('p', {}, 'None.');
   return html('section', {id: 'closings'}, html('h2', {}, 'Closings'), content);

@@ -10,7 +10,7 @@ import {regrowthPicture} from "./regrowth_picture.js";
 
 /** @typedef {import('./protocol.js').Closure} Closure */
 
-const EM = 11;
+const EM = 10;
 
 /** The closing that most was missing from. @param {Closure[]} closures */
 export function worstOf(closures) {
@@ -48,15 +48,15 @@ function zoneReport(outing, zone, of, ranges, units) {
   const worst = worstOf(of);
   const usual = usualMargin(of);
   const sum = usual ? `usual margin ${fixed(usual.middle * 1000, 0)} ms (${fixed(usual.low * 1000, 0)} to ${fixed(usual.high * 1000, 0)})` : `usual not known: fewer than ${LEAST_FOR_USUAL} closings that were not slow`;
-  const margins = zonePicture({zone, closures: of, ranges, chosen: 0, width: 240, height: 230, em: EM});
+  const margins = zonePicture({zone, closures: of, ranges, chosen: 0, width: 190, height: 210, em: EM});
   const pair = html('div', {class: 'zone-pair'}, html('figure', {}, margins, html('figcaption', {}, 'Margin to the brakes, s, by lap')));
   const regrowth = outing.regrowths.get(worst.number);
   if (regrowth) {
     const flow = flowAnswer(worst, units);
     // All of the zone's closings that were not slow: a report looks back at the whole outing.
     const band = usualBand(outing, zone, Infinity);
-    const picture = regrowthPicture({regrowth, closure: worst, usual: band, units, width: 450, height: 230, em: EM});
-    pair.append(html('figure', {}, picture, html('figcaption', {}, `Its most short: ${closingName(worst)}; ${flow.word.toLowerCase()}, ${flow.detail}`)));
+    const picture = regrowthPicture({regrowth, closure: worst, usual: band, units, width: 480, height: 210, em: EM});
+    pair.append(html('figure', {}, picture, html('figcaption', {}, `Most missing: ${closingName(worst)}; ${flow.word.toLowerCase()}, ${flow.detail}`)));
   }
   return html('div', {class: 'zone-report'}, html('h3', {}, `Zone ${zone}: ${of.length} closing${of.length === 1 ? '' : 's'}, ${sum}`), pair);
 }

@@ -36,21 +36,14 @@ export function valueText(value, unit, choice) {
  * @param {ChannelHealth} h
  */
 export function gateRule(h) {
-  const root = svg('svg', {class: 'gate', viewBox: '-60 -8 120 16', role: 'img', 'aria-label': gateWords(h)});
+  if (h.test_ratio === null || h.innovation === null) return html('span', {class: 'quiet'}, 'not compared');
+  const root = svg('svg', {class: 'gate', viewBox: '-60 -8 120 16', role: 'img', 'aria-label': `${fixed(Math.sign(h.innovation) * Math.sqrt(h.test_ratio), 2)} of the gate`});
   root.append(svg('rect', {class: 'gate-inside', x: -40, y: -5, width: 80, height: 10}));
   root.append(svg('path', {class: 'gate-ends', d: 'M-40-7V7M40-7V7M0-5V5'}));
-  if (h.test_ratio !== null && h.innovation !== null) {
-    const at = Math.max(-1.45, Math.min(1.45, Math.sign(h.innovation) * Math.sqrt(h.test_ratio)));
-    const refused = Math.abs(at) > 1;
-    root.append(svg('path', {class: refused ? 'gate-refused' : 'gate-used', d: refused ? 'M-5-5L5 5M-5 5L5-5' : 'M-4 0A4 4 0 1 0 4 0A4 4 0 1 0-4 0Z', transform: `translate(${(at * 40).toFixed(1)} 0)`}));
-  }
+  const at = Math.max(-1.45, Math.min(1.45, Math.sign(h.innovation) * Math.sqrt(h.test_ratio)));
+  const refused = Math.abs(at) > 1;
+  root.append(svg('path', {class: refused ? 'gate-refused' : 'gate-used', d: refused ? 'M-5-5L5 5M-5 5L5-5' : 'M-4 0A4 4 0 1 0 4 0A4 4 0 1 0-4 0Z', transform: `translate(${(at * 40).toFixed(1)} 0)`}));
   return root;
-}
-
-/** @param {ChannelHealth} h */
-function gateWords(h) {
-  if (h.test_ratio === null || h.innovation === null) return 'not compared';
-  return `${fixed(Math.sign(h.innovation) * Math.sqrt(h.test_ratio), 2)} of the gate`;
 }
 
 /** Trust, and what gave the channel away since when. @param {ChannelHealth} h */

@@ -53,6 +53,5 @@ function shortfall(closures, units) {
   const missing = (/** @type {Closure} */ c) => /** @type {[number, number]} */ (c.shortfall)[0];
   const worst = judged.reduce((a, b) => (missing(b) > missing(a) ? b : a));
   const share = worst.shortfall_share === null ? '' : `, ${fixed(100 * worst.shortfall_share, 1)} % of the rear downforce`;
-  const short = worst.verdict === 'short' ? '' : ', which is within the limit or not clear';
-  return `The most missing as the brakes came on was ${quantityText(/** @type {any} */ (worst.shortfall), units, 'force')}${share}: closing ${worst.number}, lap ${worst.lap}, zone ${worst.zone}${short}.`;
+  return `The most missing as the brakes came on was ${quantityText(/** @type {any} */ (worst.shortfall), units, 'force')}${share}: closing ${worst.number}, lap ${worst.lap}, zone ${worst.zone}, judged ${worst.verdict}.`;
 }

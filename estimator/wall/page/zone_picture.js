@@ -44,7 +44,7 @@ export function zonePicture({zone, closures, ranges, chosen, width, height, em})
   const x = scale(ranges.laps[0] - 0.4, ranges.laps[1] + 0.4, plot.left, plot.right);
   const y = scale(ranges.margin[0], ranges.margin[1], plot.bottom, plot.top);
   const radius = Math.max(0.3 * em, Math.min(0.46 * em, (x(1) - x(0)) * 0.22));
-  const root = svg('svg', {class: 'picture zone-picture', viewBox: `0 0 ${width} ${height}`, role: 'img', 'aria-label': spoken(zone, closures)});
+  const root = svg('svg', {class: 'picture zone-picture', viewBox: `0 0 ${width} ${height}`, 'font-size': em, role: 'img', 'aria-label': spoken(zone, closures)});
   const usual = usualMargin(closures);
   if (usual) {
     const top = Math.min(y(usual.high), y(usual.middle) - 2);
