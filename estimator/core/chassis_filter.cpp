@@ -4,10 +4,11 @@
 #include <algorithm>
 #include <cmath>
 
+#include "estimator/core/small_math.hpp"
+
 namespace holdfast::core {
 namespace {
 
-constexpr double kGravity = 9.80665;           // m/s^2, ISO 80000-3 standard value
 constexpr double kWheelCentreHeight_m = 0.32;  // common practice, no source; its error is in transfer_sd
 
 // What is believed of a car before its first straight: wide enough for open-wheel cars and heavy closed ones
@@ -37,10 +38,6 @@ constexpr double kTurnForgets_rad =
 constexpr double kSlopeDrift_m = 0.7;  // m^2/m: the slope is not the same at every height
 constexpr double kLoadOffsetDrift_n = 0.5;
 constexpr double kFlapDrift_m2 = 0.0005;
-
-double square(double v) {
-    return v * v;
-}
 
 }  // namespace
 

@@ -5,6 +5,8 @@
 #include <cmath>
 #include <limits>
 
+#include "estimator/core/small_math.hpp"
+
 namespace holdfast::core {
 namespace {
 
@@ -19,9 +21,6 @@ constexpr double kFlapPicture_s = 0.004;  // spacing of the flap's points in the
 constexpr double kNegligibleWeight = 1e-5;
 constexpr double kNaN = std::numeric_limits<double>::quiet_NaN();
 
-double square(double v) {
-    return v * v;
-}
 double normal_cdf(double z) {
     return 0.5 * std::erfc(-z * 0.70710678118654752);
 }

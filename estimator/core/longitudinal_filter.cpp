@@ -4,10 +4,11 @@
 #include <algorithm>
 #include <cmath>
 
+#include "estimator/core/small_math.hpp"
+
 namespace holdfast::core {
 namespace {
 
-constexpr double kGravity = 9.80665;  // m/s^2
 constexpr double kDragAreaPrior_m2 = 1.2, kDragAreaPriorSd_m2 = 0.6;
 constexpr double kDragFlapPrior_m2 = 0.20, kDragFlapPriorSd_m2 = 0.15;
 constexpr double kDragSlopePriorSd_m = 4.0;
@@ -17,10 +18,6 @@ constexpr double kAccelGainSd = 0.007;
 constexpr double kDriveGainSd = 0.025;
 constexpr double kDragDrift_m2 = 0.002;  // after one second
 constexpr double kAccelOffsetDrift_mps2 = 0.001;
-
-double square(double v) {
-    return v * v;
-}
 
 }  // namespace
 

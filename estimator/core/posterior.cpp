@@ -4,6 +4,8 @@
 #include <algorithm>
 #include <cmath>
 
+#include "estimator/core/small_math.hpp"
+
 namespace holdfast::core {
 namespace {
 
@@ -14,10 +16,6 @@ constexpr double kStaysLeast = 0.10;  // less than this share is not told apart 
 constexpr double kImpossible = -1e300;
 constexpr double kSqrtHalf = 0.70710678118654752;
 constexpr double kInverseSqrt2Pi = 0.39894228040143268;
-
-double square(double v) {
-    return v * v;
-}
 
 struct Evidence {
     double log = kImpossible;

@@ -4,6 +4,8 @@
 #include <algorithm>
 #include <cmath>
 
+#include "estimator/core/small_math.hpp"
+
 namespace holdfast::core {
 namespace {
 
@@ -15,10 +17,6 @@ constexpr double kRegainScatter = 0.03;  // from closing to closing
 constexpr double kRegainDrift = 0.01;
 constexpr double kPriorTau_chords = 14.0;
 constexpr double kPriorTauSpread = 0.9;  // in ln: from 5 to 40 chords within one standard deviation
-
-double square(double v) {
-    return v * v;
-}
 
 }  // namespace
 

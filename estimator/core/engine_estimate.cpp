@@ -1,0 +1,103 @@
+// SPDX-License-Identifier: MIT
+// What the engine says of now.
+#include <algorithm>
+#include <cmath>
+
+#include "estimator/core/engine.hpp"
+#include "estimator/core/small_math.hpp"
+
+namespace holdfast::core {
+namespace {
+
+constexpr double kLoadGainSd = 0.01;  // a load sensor's gain against the weight it was zeroed with
+constexpr double kDragWhole =
+    0.012;  // mass, accelerometer and drive force together, relative to the drag area
+constexpr double kSlowFrom_mps = 20.0;
+
+}  // namespace
+
+const Estimate& Engine::estimate() {
+    const auto& filter = chassis_.filter();
+    const auto& x = filter.x;
+    const bool closing = tracker_.bank().running();
+    const double q = std::max(measured_pressure_pa(), 1e-3);
+    const double wind_factor = chassis_.wind_factor();
+    const double dh_front = front_heights_.smooth_dh_m();
+    const double dh_rear = rear_heights_.smooth_dh_m();
+    const double factor_rear = chassis_.flap_height_factor(dh_rear);
+
+    Estimate& e = estimate_;
+    e.time_ns = time_ns_;
+    e.speed_mps = longitudinal_.speed_mps();
+    e.air_speed_mps = e.speed_mps * std::sqrt(pitot_ratio_);
+    e.air_density_kgpm3 = air_density_kgpm3_;
+    e.flap_area_m2 = {x[kFlapAreaRear], std::sqrt(closing ? tracker_.bank().flap_prior_variance()
+                                                          : filter.variance(kFlapAreaRear))};
+    MissingNow missing;
+    if (closing) {
+        missing = tracker_.missing();
+    } else {
+        missing.share = std::max(missing_open_, tracker_.stays_share());
+        missing.area_m2 = missing_open_ * x[kFlapAreaRear];
+    }
+    const double front_ratio = x[kFlapAreaFront] / std::max(x[kFlapAreaRear], 0.1);
+
+    // Areas now as linear forms of the states; the bank's mixture moves them from the base path.
+    ChassisFilter::Filter::Vector front{}, rear{};
+    front[kAreaFront] = 1.0;
+    front[kSlopeFront] = dh_front;
+    rear[kAreaRear] = 1.0;
+    rear[kSlopeRear] = dh_rear;
+    double area_front = x[kAreaFront] + x[kSlopeFront] * dh_front;
+    double area_rear = x[kAreaRear] + x[kSlopeRear] * dh_rear;
+    if (closing) {
+        area_front += tracker_.mean_deviation(kAreaFront, filter) +
+                      tracker_.mean_deviation(kSlopeFront, filter) * dh_front;
+        area_rear += tracker_.mean_deviation(kAreaRear, filter) +
+                     tracker_.mean_deviation(kSlopeRear, filter) * dh_rear;
+        area_front -= front_ratio * missing.area_m2;
+        area_rear -= factor_rear * missing.area_m2;
+    } else {
+        front[kFlapAreaFront] = -missing_open_;
+        rear[kFlapAreaRear] = -factor_rear * missing_open_;
+        area_front += front[kFlapAreaFront] * x[kFlapAreaFront];
+        area_rear += rear[kFlapAreaRear] * x[kFlapAreaRear];
+    }
+    // In the reference that is measured: wind, where it is not, stays in the areas.
+    area_front *= wind_factor;
+    area_rear *= wind_factor;
+    // Wind where the air speed is not measured, and the gain of the load sensors, move an area as a whole.
+    const double wind =
+        have_pitot_ ? 0.0 : 2.0 * std::sqrt(wind_variance_m2ps2_) / std::max(e.speed_mps, 5.0);
+    const double whole = std::hypot(have_pitot_ ? pitot_calibration_.scale_sd() : wind, kLoadGainSd);
+    const auto sd_of = [&](const ChassisFilter::Filter::Vector& form, double area, double missing_sd) {
+        return std::sqrt(filter.variance_of(form) + square(whole * area) + square(missing_sd));
+    };
+    e.cla_front_m2 = {area_front, sd_of(front, area_front, front_ratio * missing.area_sd_m2)};
+    e.cla_rear_m2 = {area_rear, sd_of(rear, area_rear, factor_rear * missing.area_sd_m2)};
+    e.cda_m2 = longitudinal_.drag_area(dh_front, dh_rear, factor_rear * missing.share, missing.share_sd, q,
+                                       mass_kg() * kGravity + q * (area_front + area_rear));
+    e.cda_m2.value *= wind_factor;
+    e.cda_m2.sd = std::hypot(e.cda_m2.sd, std::hypot(wind, kDragWhole) * e.cda_m2.value);
+    e.attached = {std::clamp(1.0 - missing.share, 0.0, 1.0), missing.share_sd};
+    e.downforce_front_n = {q * area_front, q * e.cla_front_m2.sd};
+    e.downforce_rear_n = {q * area_rear, q * e.cla_rear_m2.sd};
+    e.drag_n = {q * e.cda_m2.value, q * e.cda_m2.sd};
+
+    std::uint32_t flags = 0;
+    if (!converged()) flags |= kNotConverged;
+    if (stale_ != 0) flags |= kStale;
+    if (!have_pitot_) flags |= kGroundReference;
+    if (temperature_k_ == 0.0) flags |= kStandardAir;
+    if (intake_.health()[index(Channel::drive_force)].samples == 0) flags |= kDragByCoasting;
+    if (e.speed_mps < kSlowFrom_mps) flags |= kSlow;
+    if (flap_.phase() != FlapPhase::closed) flags |= kFlapOpen;
+    if (closing) flags |= kReattaching;
+    for (const ChannelHealth& h : intake_.health()) {
+        if (h.trust == Trust::distrusted) flags |= kSensorDistrusted;
+    }
+    e.flags = flags;
+    return e;
+}
+
+}  // namespace holdfast::core

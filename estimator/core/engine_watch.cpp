@@ -1,0 +1,167 @@
+// SPDX-License-Identifier: MIT
+// Which channel the engine distrusts, and what is missing.
+#include <algorithm>
+#include <cmath>
+
+#include "estimator/core/engine.hpp"
+#include "estimator/core/small_math.hpp"
+
+namespace holdfast::core {
+namespace {
+
+constexpr double kSpeedCoasts_s = 20.0;   // the accelerometer alone holds the speed for so long
+constexpr double kPitotOff_n = 300.0;     // and by so much more, for what the loads are off
+constexpr double kPitotLearned_s = 40.0;  // before, the areas are not known well enough to judge by
+constexpr double kPitotSettle_s = 0.5;
+constexpr double kPitotOff = 0.09;  // dynamic pressure against the downforce, relative
+constexpr double kPitotJumpFrom_mps = 35.0;
+constexpr double kPitotJump_mps =
+    8.0;  // the air speed leaves the speed over ground by so much at once: not wind
+constexpr double kPitotMean_s = 0.4;
+
+}  // namespace
+
+// A channel named for having jumped is heard on, to notice that it is right again; its filter refuses what is
+// wrong.
+bool Engine::heard(const Frame& frame, std::uint64_t admitted, Channel c) const {
+    if (has(admitted, c)) return true;
+    const ChannelHealth& h = intake_.health()[index(c)];
+    return h.trust == Trust::distrusted && h.fault == Fault::jumped && frame.has(c) &&
+           std::isfinite(frame.get(c));
+}
+
+void Engine::distrust(Channel c, Fault fault) {
+    ChannelHealth& h = intake_.health()[index(c)];
+    if (h.trust != Trust::good) return;
+    h.trust = Trust::distrusted;
+    h.fault = fault;
+    h.since_ns = time_ns_;
+}
+
+void Engine::trust_again(Channel c, Fault fault) {
+    ChannelHealth& h = intake_.health()[index(c)];
+    if (h.trust != Trust::distrusted || h.fault != fault) return;
+    h.trust = Trust::good;
+    h.fault = Fault::none;
+    h.since_ns = time_ns_;
+}
+
+bool Engine::usable(Channel c) const {
+    const ChannelHealth& h = intake_.health()[index(c)];
+    return h.trust == Trust::good &&
+           intake_.age_s(c, time_ns_) <= std::max(settings_.stale_s, 4.0 * h.interval_s);
+}
+
+void Engine::watch_sensors(const Frame& frame) {
+    const double time_s = frame.time_s();
+    front_watch_.see(frame);
+    rear_watch_.see(frame);
+    if (frame.has(Channel::accel_y) && std::isfinite(frame.get(Channel::accel_y))) {
+        accel_y_sum_ += frame.get(Channel::accel_y);
+        accel_y_count_ += 1.0;
+    }
+    if (frame.has(Channel::pitot_pressure) && std::isfinite(frame.get(Channel::pitot_pressure))) {
+        pitot_newest_pa_ = frame.get(Channel::pitot_pressure);
+    }
+    if (time_s < next_watch_s_) return;
+    const double elapsed = std::clamp(time_s - watched_s_, AxleWatch::kEvery_s, 5.0 * AxleWatch::kEvery_s);
+    next_watch_s_ = time_s + AxleWatch::kEvery_s;
+    watched_s_ = time_s;
+    intake_.expire(frame.time_ns);
+    HealthTable& health = intake_.health();
+    const bool lateral = accel_y_count_ > 0.0 && usable(Channel::accel_y);
+    const double accel_y = accel_y_count_ > 0.0 ? accel_y_sum_ / accel_y_count_ : 0.0;
+    accel_y_sum_ = accel_y_count_ = 0.0;
+    // Both axles' sides at once: it is the lateral acceleration that both are compared with.
+    sides_broken_s_ = lateral && front_watch_.sides_broken() && rear_watch_.sides_broken()
+                          ? sides_broken_s_ + elapsed
+                          : 0.0;
+    if (sides_broken_s_ > 0.1) {
+        ChannelHealth& h = health[index(Channel::accel_y)];
+        h.trust = Trust::distrusted;
+        h.fault = Fault::jumped;
+        h.since_ns = frame.time_ns;
+    }
+    front_watch_.judge(elapsed, frame.time_ns, longitudinal_.speed_mps(), accel_y, lateral, health);
+    rear_watch_.judge(elapsed, frame.time_ns, longitudinal_.speed_mps(), accel_y, lateral, health);
+    watch_pitot(elapsed);
+    watch_needed(frame.time_ns);
+    tell_distrust(frame.time_ns);
+}
+
+// The pitot against the downforce that the loads show: both go with the square of the same air speed.
+void Engine::watch_pitot(double elapsed_s) {
+    const ChannelHealth& h = intake_.health()[index(Channel::pitot_pressure)];
+    if (h.samples > 100 && longitudinal_.speed_mps() > kPitotJumpFrom_mps) {
+        const double ground_pa = 0.5 * air_density_kgpm3_ * square(longitudinal_.speed_mps());
+        const double headwind =
+            longitudinal_.speed_mps() * (std::sqrt(std::max(pitot_newest_pa_, 0.0) / ground_pa) - 1.0);
+        if (pitot_seen_)
+            pitot_jump_.add(std::abs(headwind - pitot_headwind_mps_) > kPitotJump_mps, elapsed_s);
+        // While it is named, the mean stays what it was: the channel returns when it comes back to it.
+        if (!pitot_seen_) pitot_headwind_mps_ = headwind;
+        if (!pitot_jump_.wrong())
+            pitot_headwind_mps_ += std::min(elapsed_s / kPitotMean_s, 1.0) * (headwind - pitot_headwind_mps_);
+        pitot_seen_ = true;
+        if (pitot_jump_.wrong()) distrust(Channel::pitot_pressure, Fault::jumped);
+    }
+    const bool steady = longitudinal_.speed_mps() > 40.0 && !brakes_.braking() &&
+                        !tracker_.bank().running() && std::abs(accel_y_mps2_) < 8.0 &&
+                        (missing_open_ < 0.01 || missing_open_ > 0.99);
+    const bool learned = static_cast<double>(time_ns_) * 1e-9 > start_s_ + kPitotLearned_s;
+    if (h.samples == 0 || !steady || !converged() || !learned) return;
+    const auto& x = chassis_.filter().x;
+    const ChassisConstants& c = chassis_.constants();
+    const double measured_n = load_front_n_ + load_rear_n_ - c.weight_front_n - c.weight_rear_n -
+                              x[kLoadOffsetFront] - x[kLoadOffsetRear] +
+                              kGravity * (car_.mass_kg.value - mass_kg());
+    const double area =
+        x[kAreaFront] + x[kAreaRear] + x[kSlopeFront] * front_heights_.smooth_dh_m() +
+        x[kSlopeRear] * rear_heights_.smooth_dh_m() -
+        missing_open_ *
+            (x[kFlapAreaFront] + x[kFlapAreaRear] * chassis_.flap_height_factor(rear_heights_.smooth_dh_m()));
+    if (measured_n < 1000.0) return;
+    const double off = pitot_newest_pa_ / pitot_calibration_.scale() * area / measured_n - 1.0;
+    pitot_off_ += std::min(elapsed_s / kPitotSettle_s, 1.0) * (off - pitot_off_);
+    const double limit = kPitotOff + kPitotOff_n / measured_n;
+    pitot_refusal_.add(std::abs(pitot_off_) > limit || pitot_calibration_.broken(), elapsed_s);
+    if (pitot_refusal_.wrong()) distrust(Channel::pitot_pressure, Fault::jumped);
+    if (pitot_refusal_.right() && pitot_jump_.right()) trust_again(Channel::pitot_pressure, Fault::jumped);
+}
+
+// Data without which nothing can be said: an alarm when they stop, and "stale" until they come again.
+void Engine::watch_needed(std::int64_t time_ns) {
+    const auto watch = [&](Channel tells, bool there) {
+        const std::uint64_t bit = std::uint64_t{1} << index(tells);
+        if (!there && (stale_ & bit) == 0)
+            alarms_.push(Alarm{AlarmKind::data_stale, time_ns, 0, tells, 1.0, {}});
+        stale_ = there ? stale_ & ~bit : stale_ | bit;
+    };
+    const double time_s = static_cast<double>(time_ns) * 1e-9;
+    const bool front_height = front_heights_.age_s(time_s) < settings_.stale_s;
+    const bool rear_height = rear_heights_.age_s(time_s) < settings_.stale_s;
+    const bool front_load = usable(Channel::load_fl) || usable(Channel::load_fr);
+    const bool rear_load = usable(Channel::load_rl) || usable(Channel::load_rr);
+    const bool early =
+        time_s < start_s_ + settings_.stale_s;  // channels have their first sample when their turn comes
+    const bool speed_held = have_accel_x_ && time_s - last_speed_s_ < kSpeedCoasts_s;
+    watch(Channel::speed, early || usable(Channel::speed) || speed_held);
+    watch(Channel::flap_position, early || usable(Channel::flap_position));
+    watch(Channel::load_fl, early || front_load || front_height);
+    watch(Channel::load_rl, early || rear_load || rear_height);
+    heights_known_ = (front_height || front_load) && (rear_height || rear_load);
+}
+
+void Engine::tell_distrust(std::int64_t time_ns) {
+    for (std::size_t i = 0; i < kChannelCount; ++i) {
+        const std::uint64_t bit = std::uint64_t{1} << i;
+        const ChannelHealth& h = intake_.health()[i];
+        const bool bad = h.trust == Trust::distrusted || h.fault == Fault::noisy;
+        if (bad && (told_ & bit) == 0) {
+            alarms_.push(Alarm{AlarmKind::sensor_distrusted, time_ns, 0, static_cast<Channel>(i), 1.0, {}});
+        }
+        told_ = bad ? told_ | bit : told_ & ~bit;
+    }
+}
+
+}  // namespace holdfast::core
