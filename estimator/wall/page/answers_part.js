@@ -61,7 +61,7 @@ export function answersPart(wall, root) {
 
   /** @returns {Answer} */
   function sensors() {
-    if (wall.pageLink === 'lost') return {mark: 'unknown', word: 'Unknown', detail: 'link lost'};
+    if (wall.pageLink === 'lost' && !wall.outing.end) return {mark: 'unknown', word: 'Unknown', detail: 'link lost'};
     if (wall.outing.now?.link.state === 'silent') return {mark: 'unknown', word: 'No data', detail: 'nothing comes from the car'};
     return sensorAnswer(wall.outing.health);
   }

@@ -15,11 +15,12 @@ export function topPart(wall) {
     node('clock').textContent = clock(series.newest);
     node('lap').textContent = now?.lap === null || now?.lap === undefined ? '–' : fixed(now.lap, 0);
     const speed = series.latest('speed');
-    node('speed').textContent = speed === null || wall.whyUnknown() === 'link lost' ? '–' : speedText(speed, wall.preferences.units);
+    node('speed').textContent = speed === null || wall.pageLink === 'lost' ? '–' : speedText(speed, wall.preferences.units);
     if (hello) node('cautions').textContent = hello.cautions.join(' ');
     drawLink(now, end);
     const lost = node('lost');
-    lost.hidden = wall.pageLink !== 'lost';
+    // After the end the program goes away; that is no loss.
+    lost.hidden = wall.pageLink !== 'lost' || end !== null;
     lost.textContent = lost.hidden ? '' : `Link lost. Everything here is as of ${clock(series.newest)} source time; trying again.`;
     document.documentElement.classList.toggle('link-lost', !lost.hidden);
   }
@@ -35,9 +36,9 @@ export function topPart(wall) {
 
   /** @param {typeof wall.outing.now} now @param {typeof wall.outing.end} end */
   function linkWords(now, end) {
+    if (end) return {mark: 'full', words: end.complete ? 'ended, complete' : 'ended, incomplete'};
     if (wall.pageLink === 'lost') return {mark: 'distrusted', words: 'link lost'};
     if (wall.pageLink === 'connecting') return {mark: 'unknown', words: 'connecting'};
-    if (end) return {mark: 'full', words: end.complete ? 'ended, complete' : 'ended, incomplete'};
     if (now?.link.state === 'silent') return {mark: 'distrusted', words: `car silent ${age(wall.age())}`};
     if (now?.link.state === 'ended') return {mark: 'full', words: 'ended'};
     const lost = now?.link.lost ?? 0;

@@ -47,7 +47,8 @@ export function fixed(value, decimals) {
 /** Decimals that show two figures of the uncertainty, within what is sensible. @param {number} sd @param {number} most */
 export function decimalsFor(sd, most) {
   if (!(sd > 0)) return most;
-  return Math.max(0, Math.min(most, 1 - Math.floor(Math.log10(sd))));
+  // 0.995 and more is written as 1.0.
+  return Math.max(0, Math.min(most, 1 - Math.floor(Math.log10(sd) + 0.00218)));
 }
 
 /** "1703 ± 175", both with the decimals that the uncertainty deserves. @param {number} value @param {number} sd @param {number} most */

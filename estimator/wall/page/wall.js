@@ -98,9 +98,9 @@ export class Wall {
 
   /** Why nothing can be said of now, or null where it can. @returns {string|null} */
   whyUnknown() {
-    if (this.pageLink === 'lost') return 'link lost';
     const now = this.outing.now;
     if (this.outing.end || now?.link.state === 'ended') return 'the outing has ended';
+    if (this.pageLink === 'lost') return 'link lost';
     if (this.pageLink === 'connecting' || !now) return 'nothing has come yet';
     if (now.link.state === 'silent') return 'nothing comes from the car';
     if (performance.now() - this.heard > SILENT_MS) return 'the program is silent';

@@ -108,7 +108,7 @@ export function rowAt(t) {
 export function columns(from, to, step) {
   /** @type {Record<string, number[]>} */
   const out = Object.fromEntries(COLUMNS.map((name) => [name, []]));
-  for (let k = Math.ceil(from / step - 1e-6); k * step < to - 1e-9; k += 1) {
+  for (let k = Math.max(0, Math.ceil(from / step - 1e-6)); k * step < to - 1e-9; k += 1) {
     rowAt(k * step).forEach((value, i) => out[COLUMNS[i]].push(value));
   }
   return out;
