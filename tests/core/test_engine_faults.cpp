@@ -139,16 +139,17 @@ void check_no_nonsense(const Follow& follow) {
         for (const sim::TruthClosure& truth : follow.drive().closings())
             real = real || std::abs(truth.time_closed_s - c.time_closed_s) < 0.15;
         invented += real ? 0U : 1U;
-        if (!c.reattachment_known) CHECK(c.verdict == core::Verdict::unclear);
+        if (!c.reattachment_known) CHECK(c.verdict != core::Verdict::full);
     }
     CHECK(not_finite == 0);
     CHECK(invented == 0);
 }
 
 // Some seconds after the return: speed, areas and flags as if nothing had been.
-void check_recovered(const Follow& follow, double since_s) {
+void check_recovered(const Follow& follow, double since_s, bool trusted = true) {
     double speed = 0.0, area = 0.0;
     std::uint32_t flags = 0;
+    std::size_t compared = 0;
     for (const core::Estimate& e : follow.estimates()) {
         const double time_s = static_cast<double>(e.time_ns) * 1e-9;
         if (time_s < since_s) continue;
@@ -156,13 +157,20 @@ void check_recovered(const Follow& follow, double since_s) {
         const sim::TruthSample& truth = follow.drive().truth_at(time_s);
         speed = std::max(speed, std::abs(e.speed_mps - truth.speed_mps));
         if (truth.speed_mps < 50.0 || (e.flags & (core::kFlapOpen | core::kReattaching)) != 0) continue;
+        // Areas over ground have the wind in them; the truth's have not.
+        const bool windy = follow.drive().scenario().air.wind_mps > 0.0;
+        if (windy && (e.flags & core::kGroundReference) != 0) continue;
+        ++compared;
         area = std::max({area, std::abs(e.cla_front_m2.value / truth.cla_front_m2 - 1.0),
                          std::abs(e.cla_rear_m2.value / truth.cla_rear_m2 - 1.0)});
     }
     INFO("worst speed error " << speed << " m/s, worst area error " << area << ", flags " << flags);
     CHECK(speed < 1.5);
     CHECK(area < 0.15);
-    CHECK((flags & (core::kStale | core::kSensorDistrusted | core::kNotConverged)) == 0);
+    CHECK((flags & (core::kStale | core::kNotConverged)) == 0);
+    if (!trusted) return;
+    CHECK((flags & core::kSensorDistrusted) == 0);
+    CHECK(compared > 50);
 }
 
 // The fault, the return, and what has to hold of any of them.
@@ -174,13 +182,13 @@ Follow through(const Stage& stage, const sim::TruthClosure& closing, Channel c, 
     return follow;
 }
 
-// Cars: one with every sensor there is, one without pitot, accel_z and heading on a windless day.
-const char* const kCars[] = {"open_wheel-full", "prototype-calm"};
+constexpr const char* kPlainCar = "open_wheel-calm";  // no wind: areas over ground are those over air
+constexpr const char* kFullCar = "open_wheel-full";   // with accel_z, pitot, heading and yaw rate too
 
 }  // namespace
 
 TEST_CASE("without a fault: the usual closing is full, the slow one short, seed 7") {
-    const Stage& stage = Stage::of(kCars[0]);
+    const Stage& stage = Stage::of(kPlainCar);
     Follow follow = stage.before(stage.usual);
     follow.to_the_end();
     check_no_nonsense(follow);
@@ -199,7 +207,7 @@ TEST_CASE("without a fault: the usual closing is full, the slow one short, seed 
 }
 
 TEST_CASE("every channel lost, frozen or not-a-number around a closing that is short, seed 7", "[long]") {
-    for (const char* car : kCars) {
+    for (const char* car : {kFullCar, "prototype-calm"}) {
         const Stage& stage = Stage::of(car);
         for (const Channel c : stage.channels()) {
             for (const Kind kind : {Kind::drop, Kind::freeze, Kind::invalid}) {
@@ -215,7 +223,7 @@ TEST_CASE("every channel lost, frozen or not-a-number around a closing that is s
 }
 
 TEST_CASE("every channel lost, frozen or not-a-number around a usual closing, seed 7", "[long]") {
-    const Stage& stage = Stage::of(kCars[0]);
+    const Stage& stage = Stage::of(kPlainCar);
     for (const Channel c : stage.channels()) {
         for (const Kind kind : {Kind::drop, Kind::freeze, Kind::invalid}) {
             INFO(stage.name(c) << ", kind " << static_cast<int>(kind));
@@ -227,9 +235,26 @@ TEST_CASE("every channel lost, frozen or not-a-number around a usual closing, se
     }
 }
 
-TEST_CASE("speed lost: the closing is not judged, and both the silence and the brakes say so, seed 7") {
-    const Stage& stage = Stage::of(kCars[0]);
-    const Follow follow = through(stage, stage.short_of, Channel::speed, Kind::drop);
+TEST_CASE("speed lost: the accelerometer carries it for some seconds, seed 7") {
+    const Stage& stage = Stage::of(kPlainCar);
+    Follow follow = stage.before(stage.short_of);
+    const double from_s = stage.short_of.time_command_s - kBefore_s;
+    follow.drop(Channel::speed).until(from_s + 2.0);
+    double worst = 0.0;
+    for (const core::Estimate& e : follow.estimates()) {
+        const double time_s = static_cast<double>(e.time_ns) * 1e-9;
+        if (time_s < from_s) continue;
+        worst = std::max(worst, std::abs(e.speed_mps - follow.drive().truth_at(time_s).speed_mps));
+    }
+    CHECK(worst < 1.0);
+}
+
+TEST_CASE("speed and acceleration lost: the closing is not judged, and silence and brakes say so, seed 7") {
+    const Stage& stage = Stage::of(kPlainCar);
+    Follow follow = stage.before(stage.short_of);
+    follow.drop(Channel::speed).drop(Channel::accel_x).until(stage.short_of.time_closed_s + kAfter_s);
+    follow.heal().until(stage.short_of.time_closed_s + kAfter_s + kReturn_s);
+    check_no_nonsense(follow);
     const auto found = follow.found(stage.short_of);
     REQUIRE(found);
     CHECK_FALSE(found->reattachment_known);
@@ -244,7 +269,7 @@ TEST_CASE("speed lost: the closing is not judged, and both the silence and the b
 }
 
 TEST_CASE("flap position lost: the closing cannot be followed, and the brakes after it say so, seed 7") {
-    const Stage& stage = Stage::of(kCars[0]);
+    const Stage& stage = Stage::of(kPlainCar);
     const Follow follow = through(stage, stage.short_of, Channel::flap_position, Kind::drop);
     CHECK_FALSE(follow.found(stage.short_of));
     bool stale = false, unknown = false;
@@ -258,7 +283,7 @@ TEST_CASE("flap position lost: the closing cannot be followed, and the brakes af
 }
 
 TEST_CASE("one load or one ride height of an axle lost: the others carry the judgement, seed 7") {
-    const Stage& stage = Stage::of(kCars[0]);
+    const Stage& stage = Stage::of(kPlainCar);
     for (const Channel c : stage.channels()) {
         const bool load = c >= Channel::load_fl && c <= Channel::load_rr;
         if (!load && !is_ride_height(c)) continue;
@@ -273,7 +298,7 @@ TEST_CASE("one load or one ride height of an axle lost: the others carry the jud
 }
 
 TEST_CASE("all that tells of the rear axle lost at once: nothing is said of the closing, seed 7") {
-    const Stage& stage = Stage::of(kCars[0]);
+    const Stage& stage = Stage::of(kPlainCar);
     Follow follow = stage.before(stage.short_of);
     follow.drop(Channel::load_rl).drop(Channel::load_rr);
     for (const Channel c : stage.channels()) {
@@ -291,7 +316,7 @@ TEST_CASE("all that tells of the rear axle lost at once: nothing is said of the 
 }
 
 TEST_CASE("every channel jumps around a closing that is short, seed 7", "[long]") {
-    const Stage& stage = Stage::of(kCars[0]);
+    const Stage& stage = Stage::of(kFullCar);
     for (const Channel c : stage.channels()) {
         INFO(stage.name(c));
         const Follow follow = through(stage, stage.short_of, c, Kind::jump);
@@ -299,7 +324,8 @@ TEST_CASE("every channel jumps around a closing that is short, seed 7", "[long]"
         const bool believed = c == Channel::accel_x || c == Channel::accel_y || c == Channel::accel_z ||
                               c == Channel::pitot_pressure;
         if (believed) continue;
-        check_recovered(follow, stage.short_of.time_closed_s + kAfter_s + kSettle_s);
+        // A sensor that has jumped may be held to its word for longer.
+        check_recovered(follow, stage.short_of.time_closed_s + kAfter_s + kSettle_s, false);
         const auto found = follow.found(stage.short_of);
         if (found) CHECK(found->verdict != core::Verdict::full);
     }
@@ -308,7 +334,7 @@ TEST_CASE("every channel jumps around a closing that is short, seed 7", "[long]"
 TEST_CASE(
     "the link falls silent in mid-closing and comes back: the closing is left open, the rest goes on, "
     "seed 7") {
-    const Stage& stage = Stage::of(kCars[0]);
+    const Stage& stage = Stage::of(kPlainCar);
     Follow follow = stage.before(stage.short_of);
     follow.until(stage.short_of.time_closed_s - 0.02).skip(1.5).to_the_end();
     check_no_nonsense(follow);

@@ -67,4 +67,6 @@ TEST_CASE("coast-down: the filter finds speed, drag area and the accelerometer's
     const double offset_sd = std::sqrt(filter.filter().variance(kAccelOffset));
     CHECK(std::abs(filter.filter().x[kAccelOffset] - kOffset_mps2) < 3.0 * offset_sd);
     CHECK(offset_sd < 0.05);
+    // It has no error of scale, and its noise is not taken for one.
+    CHECK(std::abs(filter.filter().x[kAccelGain]) < 0.02);
 }
