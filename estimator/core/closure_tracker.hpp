@@ -89,6 +89,8 @@ class ClosureTracker {
     bool shut_ = false;
     bool alarmed_ = false;
     bool usable_ = false;  // data were good through the window
+    std::uint64_t sources_ =
+        0;  // at the command: one that is lost or comes back meanwhile spoils the judgement
     double next_weigh_s_ = 0.0;
     double stays_share_ = 0.0;
     double stays_area_m2_ = 0.0;

@@ -11,6 +11,8 @@
 namespace holdfast::core {
 namespace {
 
+constexpr double kSettleAfterChange_s =
+    1.0;                                // a closing so soon after a load or height came or went is not judged
 constexpr double kGapRestart_s = 0.05;  // a pause that the motion of the car does not survive
 constexpr double kUnseenFor_s = 3.0;    // brakes within so much of a command belong to it
 constexpr double kDriftEvery_s = 0.02;
@@ -171,6 +173,17 @@ void Engine::restart_motion(double time_s) {
     loads_known_ = false;
 }
 
+// Channels that a judgement of a closing rests on, as far as they are usable.
+std::uint64_t Engine::sources() const {
+    std::uint64_t set = 0;
+    const auto look = [&](Channel c) { set |= usable(c) ? std::uint64_t{1} << index(c) : 0; };
+    for (const Channel c : {Channel::load_fl, Channel::load_fr, Channel::load_rl, Channel::load_rr}) look(c);
+    for (const AxleHeights* heights : {&front_heights_, &rear_heights_}) {
+        for (std::size_t i = 0; i < heights->count(); ++i) look(heights->sensor(i).channel);
+    }
+    return set;
+}
+
 bool Engine::converged() const {
     const auto& f = chassis_.filter();
     return f.variance(kAreaFront) < square(0.25) && f.variance(kAreaRear) < square(0.25);
@@ -188,7 +201,8 @@ AeroNow Engine::aero_now(double time_s) const {
     now.rear_area_attached_m2 = x[kAreaRear] + x[kSlopeRear] * dh_rear;
     now.rear_area_sd_m2 = std::sqrt(chassis_.filter().variance(kAreaRear));
     now.lap = static_cast<std::int32_t>(std::lround(lap_));
-    now.reliable = loads_known_ && heights_known_ && stale_ == 0 && converged();
+    now.reliable = loads_known_ && heights_known_ && stale_ == 0 && converged() &&
+                   time_s > sources_changed_s_ + kSettleAfterChange_s;
     return now;
 }
 

@@ -90,6 +90,7 @@ class Engine {
     [[nodiscard]] double tyre_force_x_n() const;
     [[nodiscard]] double mass_kg() const;
     [[nodiscard]] AeroNow aero_now(double time_s) const;
+    [[nodiscard]] std::uint64_t sources() const;
     [[nodiscard]] bool converged() const;
 
     Car car_;
@@ -142,6 +143,8 @@ class Engine {
     double next_drift_s_ = 0.0;
     double next_watch_s_ = 0.0, watched_s_ = 0.0;
     double accel_y_sum_ = 0.0, accel_y_count_ = 0.0;  // since the watches last judged
+    std::uint64_t sources_ = 0;                       // loads and heights that were usable at the last look
+    double sources_changed_s_ = -10.0;
     double sides_broken_s_ = 0.0;
     std::uint64_t told_ = 0;            // distrusted channels that an alarm has told of
     bool heights_known_ = true;         // each axle has at least one height or a load to take it from

@@ -13,6 +13,9 @@ constexpr double kPitotSmoothing_s = 0.05;
 constexpr double kSlipLag_s =
     0.06;  // common practice, no source: tyre relaxation length over speed, wheel inertia
 constexpr double kSlipUnsure = 0.010;  // relative speed error for a force of one weight not yet followed
+constexpr double kLost_mps = 15.0;
+// Spectral density of the acceleration where no accelerometer tells it: with the speed at hand, and without.
+constexpr double kDensityBySpeed_m2ps3 = 4.0, kDensityBlind_m2ps3 = 400.0;
 constexpr double kSpeedGate = 8.0;
 constexpr double kSpeedReturnGate = 3.0;  // for a speed that was named
 constexpr double kSpeedAlone_s = 1.0;     // then a refused speed is believed where there is no accelerometer
@@ -45,7 +48,8 @@ void Engine::step_longitudinal(const Frame& frame, std::uint64_t admitted, doubl
     const double density = have_accel_x_
                                ? square(std::max(accel_noise, 0.05)) *
                                      std::max(intake_.health()[index(Channel::accel_x)].interval_s, 1e-3)
-                               : 4.0;
+                           : usable(Channel::speed) ? kDensityBySpeed_m2ps3
+                                                    : kDensityBlind_m2ps3;
     longitudinal_.predict(dt_s, accel_x_mps2_, density + 1e-4);
     if (heard(frame, admitted, Channel::speed)) {
         const double measured = frame.get(Channel::speed);
@@ -153,8 +157,12 @@ void Engine::fuse_speed(double measured_mps, double since_s) {
         } else if (speed_refusal_.wrong()) {
             distrust(Channel::speed, Fault::jumped);
         }
-        // Without an accelerometer there is nothing else to believe for long.
-        if (!have_accel_x_ && speed_refusal_.refused_s() > kSpeedAlone_s) longitudinal_.restart(measured_mps);
+        // Without an accelerometer there is nothing else to believe for long; and a speed this far off is a
+        // filter that has lost the car, not a sensor's error.
+        const bool alone = !have_accel_x_ && speed_refusal_.refused_s() > kSpeedAlone_s;
+        const bool lost =
+            std::abs(innovation.value) > kLost_mps && speed_refusal_.refused_s() > kSpeedAlone_s;
+        if (alone || lost) longitudinal_.restart(measured_mps);
     }
     speed_innovation_before_ +=
         std::min(since_s / kInnovationMemory_s, 1.0) * (innovation.value - speed_innovation_before_);

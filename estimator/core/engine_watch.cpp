@@ -149,6 +149,9 @@ void Engine::watch_needed(std::int64_t time_ns) {
     watch(Channel::flap_position, early || usable(Channel::flap_position));
     watch(Channel::load_fl, early || front_load || front_height);
     watch(Channel::load_rl, early || rear_load || rear_height);
+    const std::uint64_t now = sources();
+    if (now != sources_ && !early) sources_changed_s_ = time_s;
+    sources_ = now;
     heights_known_ = (front_height || front_load) && (rear_height || rear_load);
 }
 
