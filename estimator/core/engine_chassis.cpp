@@ -101,12 +101,13 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
         chassis_.drift(elapsed, have_pitot_, have_heading_ ? 0.0 : turn_radps);
         longitudinal_.drift(elapsed, 0.002);
     }
+    // Before the heights: what it measures is the balance of the step just predicted.
+    if (heard(frame, admitted, Channel::accel_z)) fuse_accel_z(frame.get(Channel::accel_z));
     fuse_height(front_heights_, front_road_, kRoadFront, frame, admitted,
                 front_watch_.roll_rad(accel_y_mps2_));
     fuse_height(rear_heights_, rear_road_, kRoadRear, frame, admitted, rear_watch_.roll_rad(accel_y_mps2_));
     stand_in_for_height(front_heights_, front_watch_, kRoadFront, time_s, front);
     stand_in_for_height(rear_heights_, rear_watch_, kRoadRear, time_s, rear);
-    if (heard(frame, admitted, Channel::accel_z)) fuse_accel_z(frame.get(Channel::accel_z));
 }
 
 void Engine::fuse_height(AxleHeights& heights, RoadTuning& tuning, ChassisState road, const Frame& frame,
