@@ -255,6 +255,9 @@ TEST_CASE("speed and acceleration lost: the closing is not judged, and silence a
     follow.drop(Channel::speed).drop(Channel::accel_x).until(stage.short_of.time_closed_s + kAfter_s);
     follow.heal().until(stage.short_of.time_closed_s + kAfter_s + kReturn_s);
     check_no_nonsense(follow);
+    const core::Estimate& last = follow.estimates().back();
+    const double end_s = static_cast<double>(last.time_ns) * 1e-9;
+    CHECK(last.speed_mps == Approx(follow.drive().truth_at(end_s).speed_mps).margin(0.5));
     const auto found = follow.found(stage.short_of);
     REQUIRE(found);
     CHECK_FALSE(found->reattachment_known);
@@ -282,18 +285,32 @@ TEST_CASE("flap position lost: the closing cannot be followed, and the brakes af
     CHECK(unknown);
 }
 
-TEST_CASE("one load or one ride height of an axle lost: the others carry the judgement, seed 7") {
+TEST_CASE("one load or one ride height lost for good: the others carry the closings that follow, seed 7",
+          "[long]") {
     const Stage& stage = Stage::of(kPlainCar);
     for (const Channel c : stage.channels()) {
         const bool load = c >= Channel::load_fl && c <= Channel::load_rr;
         if (!load && !is_ride_height(c)) continue;
         INFO(stage.name(c));
-        const Follow follow = through(stage, stage.usual, c, Kind::drop);
-        const auto found = follow.found(stage.usual);
-        REQUIRE(found);
-        CHECK(found->reattachment_known);
-        CHECK(found->t95_low_s < stage.usual.t95_s);
-        CHECK(found->t95_high_s > stage.usual.t95_s);
+        Follow follow = stage.before(stage.usual);
+        follow.drop(c).to_the_end();
+        check_no_nonsense(follow);
+        std::size_t later = 0, judged = 0, inside = 0;
+        for (const sim::TruthClosure& truth : follow.drive().closings()) {
+            if (truth.time_command_s < stage.usual.time_closed_s + kAfter_s || std::isnan(truth.t95_s))
+                continue;
+            ++later;
+            const auto found = follow.found(truth);
+            if (!found || !found->reattachment_known) continue;
+            ++judged;
+            inside += found->t95_low_s < truth.t95_s && truth.t95_s < found->t95_high_s ? 1U : 0U;
+        }
+        REQUIRE(later >= 3);
+        CHECK(judged == later);
+        CHECK(inside + 1 >= later);
+        const auto late = follow.found(stage.short_of);
+        REQUIRE(late);
+        CHECK(late->verdict != core::Verdict::full);
     }
 }
 
