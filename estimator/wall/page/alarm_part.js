@@ -84,7 +84,7 @@ function item(alarm, followers) {
       html('p', {class: 'alarm-text'}, alarm.text),
       html('p', {class: 'alarm-state'}, state + again, alarm.closure ? html('button', {type: 'button', class: 'plain', 'data-act': 'closing', 'data-closing': alarm.closure}, `show closing ${alarm.closure}`) : null),
     ),
-    alarm.acknowledged ? null : html('button', {type: 'button', class: 'acknowledge', 'data-act': 'acknowledge', 'data-id': alarm.id, 'aria-label': `Acknowledge: ${alarm.text}`}, 'Seen'),
+    alarm.acknowledged ? null : html('button', {type: 'button', class: 'acknowledge', 'data-act': 'acknowledge', 'data-id': alarm.id, 'aria-label': `Seen: ${alarm.text}`}, 'Seen'),
   );
 }
 
