@@ -30,8 +30,11 @@ void add_results(CLI::App& sub, ResultOptions& results) {
     sub.add_option("--rate", results.rate_hz, "Rows a second in estimates.csv")
         ->check(CLI::Range(0.1, 1000.0))
         ->capture_default_str();
+    sub.add_option("--page", results.page,
+                   "Serve the wall page here, e.g. 127.0.0.1:8080; an address that other machines reach asks "
+                   "them for a token");
     sub.add_flag("--json", results.json, "Closings, alarms and summary as JSON lines on standard output");
-    sub.footer(std::string("\n") + kStatuses + "\n" + kCautions);
+    sub.footer(std::string("\n") + kStatuses + "\n" + cautions());
 }
 
 void add_log_reading(CLI::App& sub, std::string& channels, bool& strict) {
@@ -48,7 +51,7 @@ int main(int argc, char** argv) {
         "holdfast");
     app.set_version_flag("--version", "holdfast " HOLDFAST_VERSION, "Show the version and leave");
     app.require_subcommand(1);
-    app.footer(std::string("\n") + kCautions);
+    app.footer("\n" + cautions());
 
     ReplayOptions replaying;
     CLI::App* replay_words =

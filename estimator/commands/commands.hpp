@@ -15,6 +15,7 @@ struct ResultOptions {
     std::string out;  // folder
     double rate_hz = outputs::kDefaultRateHz;
     bool json = false;  // JSON lines instead of sentences
+    std::string page;   // HOST:PORT of the wall page; empty: none
 };
 
 struct ReplayOptions {

@@ -26,22 +26,25 @@ using link::Arrival;
 
 // How often Ctrl-C and silence are looked at while nothing comes.
 constexpr std::chrono::milliseconds kLook{100};
+constexpr std::chrono::milliseconds kLinkPeriod{250};  // of the link's state on the page
 
 // A stage for each stream of the node. The first stream's results lie in the folder that was asked for; those
 // after a restart of the node in stream-2, stream-3, ... within it.
 class Listening {
   public:
     Listening(const LiveOptions& options, session::CarFile car_file, link::FrameReceiver receiver,
-              std::optional<link::Publisher> publisher)
+              std::optional<link::Publisher> publisher, wall::Wall& wall)
         : options_(options),
           car_file_(std::move(car_file)),
           receiver_(std::move(receiver)),
-          publisher_(std::move(publisher)) {}
+          publisher_(std::move(publisher)),
+          wall_(wall) {}
 
     int until_the_end() {
         while (!session::interrupted()) {
             const Arrival arrival = receiver_.receive(kLook);
             watch_silence(arrival.kind);
+            attend_page();
             if (arrival.kind == Arrival::Kind::stream && !begin_stream()) return kFailed;
             if (arrival.kind == Arrival::Kind::frames) take(arrival.frames);
             if (arrival.kind == Arrival::Kind::end) {
@@ -67,8 +70,9 @@ class Listening {
         if (++streams_ > 1) folder /= "stream-" + std::to_string(streams_);
         wire_.reset();
         if (publisher_) wire_.emplace(*publisher_, receiver_.info());
-        stage_ = std::make_unique<Stage>(car_file_, *bound, receiver_.info(), options_.from, folder,
-                                         options_.results, wire_ ? &*wire_ : nullptr);
+        stage_ = std::make_unique<Stage>(car_file_, *bound, receiver_.info(),
+                                         Input{.name = options_.from, .live = true, .stream = streams_},
+                                         folder, options_.results, wall_, wire_ ? &*wire_ : nullptr);
         return true;
     }
 
@@ -90,6 +94,23 @@ class Listening {
             stage_->remark("nothing has come for a second; the link is " +
                            std::string(receiver_.connected() ? "up" : "down"));
         }
+    }
+
+    void attend_page() {
+        if (!stage_ || !wall_.server) return;
+        stage_->attend_page();
+        const auto now = Silence::Clock::now();
+        if (now < next_link_) return;
+        next_link_ = now + kLinkPeriod;
+        const link::LinkCounters n = receiver_.counters();
+        using State = wall::LinkStatus::State;
+        stage_->show_link({.state = silence_.lasts() ? State::silent : State::up,
+                           .messages = n.messages,
+                           .lost = n.lost_messages,
+                           .repeated = n.repeated,
+                           .out_of_order = n.out_of_order,
+                           .damaged = n.damaged,
+                           .restarts = streams_ - 1});
     }
 
     // Ends the stage. What the link has lost makes its input incomplete, whatever the node says.
@@ -123,10 +144,12 @@ class Listening {
     session::CarFile car_file_;
     link::FrameReceiver receiver_;
     std::optional<link::Publisher> publisher_;
+    wall::Wall& wall_;
     std::optional<WireSink> wire_;  // of the stage
     std::unique_ptr<Stage> stage_;  // of the newest stream
-    std::uint64_t streams_ = 0;
+    std::uint32_t streams_ = 0;
     std::int64_t last_time_ns_ = 0;
+    Silence::Clock::time_point next_link_{};
     Silence silence_{Silence::Clock::now()};
     std::uint64_t missed_ = 0;         // frames of the newest stream that were sent before we listened
     std::uint64_t missed_in_all_ = 0;  // the same of all streams
@@ -154,9 +177,11 @@ int live(const LiveOptions& options) {
         publisher = std::move(*bound);
         std::cerr << "publishing on " << publisher->endpoint() << '\n';
     }
+    wall::Wall wall;
+    open_page(wall, options.results);
     std::cerr << "listening to " << options.from << '\n';
     session::note_interrupts();
-    return Listening(options, std::move(*car_file), std::move(*receiver), std::move(publisher))
+    return Listening(options, std::move(*car_file), std::move(*receiver), std::move(publisher), wall)
         .until_the_end();
 }
 

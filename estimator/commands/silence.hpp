@@ -30,6 +30,8 @@ class Silence {
         return length;
     }
 
+    [[nodiscard]] bool lasts() const { return silent_; }
+
   private:
     Clock::time_point heard_;
     bool silent_ = false;

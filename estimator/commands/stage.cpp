@@ -7,6 +7,8 @@
 #include <iostream>
 #include <utility>
 
+#include "estimator/commands/cautions.hpp"
+
 namespace holdfast::commands {
 namespace {
 
@@ -21,19 +23,31 @@ std::ostream* status_stream() {
     return ::isatty(STDERR_FILENO) == 1 ? &std::cerr : nullptr;
 }
 
-std::vector<outputs::Sink*> chosen(outputs::Folder& folder, outputs::Sink& shown, outputs::Sink* also) {
-    std::vector<outputs::Sink*> sinks{&folder, &shown};
+std::vector<outputs::Sink*> chosen(outputs::Folder& folder, outputs::Sink& shown, outputs::Sink& observer,
+                                   outputs::Sink* also) {
+    std::vector<outputs::Sink*> sinks{&folder, &shown, &observer};
     if (also != nullptr) sinks.push_back(also);
     return sinks;
+}
+
+wall::Hello hello(const outputs::Outing& outing, const Input& input) {
+    return {.car_name = outing.car_name,
+            .origin = input.name,
+            .live = input.live,
+            .stream = input.stream,
+            .flap_chord_m = outing.flap_chord_m,
+            .settings = core::Settings{},
+            .cautions = {kCautionSentences.begin(), kCautionSentences.end()},
+            .channels = outing.stream};
 }
 
 }  // namespace
 
 Stage::Stage(const session::CarFile& car_file, const session::BoundCar& bound, const StreamInfo& stream,
-             const std::string& log, const std::filesystem::path& folder, const ResultOptions& options,
-             outputs::Sink* also)
+             const Input& input, const std::filesystem::path& folder, const ResultOptions& options,
+             wall::Wall& wall, outputs::Sink* also)
     : adapter_(bound.car),
-      folder_(folder, {.log = log,
+      folder_(folder, {.log = input.name,
                        .car_name = car_file.name,
                        .car_file = car_file.file,
                        .flap_chord_m = bound.car.flap_chord_m,
@@ -41,7 +55,9 @@ Stage::Stage(const session::CarFile& car_file, const session::BoundCar& bound, c
                        .stream = stream}),
       terminal_(std::cout, status_stream(), output_style(), folder_),
       json_lines_(std::cout, folder_),
-      sinks_(chosen(folder_, options.json ? static_cast<outputs::Sink&>(json_lines_) : terminal_, also)),
+      observer_(folder_, hello(folder_.outing(), input), wall),
+      sinks_(chosen(folder_, options.json ? static_cast<outputs::Sink&>(json_lines_) : terminal_, observer_,
+                    also)),
       run_(bound.car, core::Settings{}, options.rate_hz, sinks_) {}
 
 void Stage::step(Frame& frame) {
@@ -81,6 +97,12 @@ std::optional<session::BoundCar> bind(const session::CarFile& car_file, const St
         std::cerr << "note: ride_height_" << name << " is left out: " << car_file.file
                   << " does not say where it sits\n";
     return std::move(*bound);
+}
+
+void open_page(wall::Wall& wall, const ResultOptions& options) {
+    if (options.page.empty()) return;
+    wall.server = std::make_unique<wall::Server>(wall::ServerOptions{.listen = options.page});
+    std::cerr << "page at " << wall.server->url() << std::endl;
 }
 
 void tell(const session::Errors& errors) {

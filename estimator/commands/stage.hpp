@@ -15,17 +15,25 @@
 #include "estimator/outputs/terminal.hpp"
 #include "estimator/session/bind.hpp"
 #include "estimator/session/car_file.hpp"
+#include "estimator/wall/observer.hpp"
 #include "proto/vocabulary/frame.hpp"
 
 namespace holdfast::commands {
 
+// Where the frames come from, in words.
+struct Input {
+    std::string name;  // file or endpoint
+    bool live = false;
+    std::uint32_t stream = 1;  // counts the node's restarts
+};
+
 class Stage {
   public:
-    // `log` is what the files call the input. `also` listens too, where it is not null, and must outlive the
-    // stage. Throws std::runtime_error where the folder cannot be written.
+    // `also` listens too, where it is not null; it and the wall must
+    // outlive the stage. Throws std::runtime_error where the folder cannot be written.
     Stage(const session::CarFile& car_file, const session::BoundCar& bound, const StreamInfo& stream,
-          const std::string& log, const std::filesystem::path& folder, const ResultOptions& options,
-          outputs::Sink* also);
+          const Input& input, const std::filesystem::path& folder, const ResultOptions& options,
+          wall::Wall& wall, outputs::Sink* also);
 
     void step(Frame& frame);
     void finish(bool complete, const std::string& reason = {});
@@ -37,6 +45,9 @@ class Stage {
     // A remark for a person, on standard error.
     void remark(const std::string& line);
     void set_progress(double share) { terminal_.set_progress(share); }
+    // For the page, between frames: acknowledgements in, the link's state out.
+    void attend_page() { observer_.poll(); }
+    void show_link(const wall::LinkStatus& link) { observer_.set_link(link); }
     void set_link_counters(outputs::LinkCounters counters) { folder_.set_link_counters(std::move(counters)); }
 
   private:
@@ -44,6 +55,7 @@ class Stage {
     outputs::Folder folder_;
     outputs::Terminal terminal_;
     outputs::JsonLines json_lines_;
+    wall::Observer observer_;
     std::vector<outputs::Sink*> sinks_;
     outputs::Run run_;
 };
@@ -53,6 +65,9 @@ class Stage {
 // The car bound to the stream, likewise; what the stream lacks or has beyond the car is told as a note.
 [[nodiscard]] std::optional<session::BoundCar> bind(const session::CarFile& car_file,
                                                     const StreamInfo& stream);
+
+// Opens the page where one is asked for, and says on standard error where it is. Throws std::runtime_error.
+void open_page(wall::Wall& wall, const ResultOptions& options);
 
 // "error: ..." on standard error, a line each.
 void tell(const session::Errors& errors);
