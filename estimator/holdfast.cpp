@@ -62,8 +62,8 @@ int main(int argc, char** argv) {
     bool as_live = false;
     replay_words->add_flag(
         "--as-live", as_live,
-        "Use only what a live run would have known at each moment, to the bit. In this version "
-        "every replay does: estimates are causal, and this flag changes nothing");
+        "Use only what a live run would have known at each moment, to the bit. Without it the areas of "
+        "estimates.csv are smoothed: each uses the whole outing");
 
     LiveOptions living;
     CLI::App* live_words = command(app, "live", "Estimate from an on-car node, as the car drives");
@@ -92,6 +92,7 @@ int main(int argc, char** argv) {
     }
 
     try {
+        if (!as_live) replaying.results.knowledge = holdfast::outputs::Knowledge::of_the_outing;
         if (replay_words->parsed()) return replay(replaying);
         if (live_words->parsed()) return live(living);
         if (convert_words->parsed()) return convert(converting);

@@ -16,6 +16,7 @@ struct ResultOptions {
     double rate_hz = outputs::kDefaultRateHz;
     bool json = false;  // JSON lines instead of sentences
     std::string page;   // HOST:PORT of the wall page; empty: none
+    outputs::Knowledge knowledge = outputs::Knowledge::of_the_moment;
 };
 
 struct ReplayOptions {

@@ -58,7 +58,7 @@ Stage::Stage(const session::CarFile& car_file, const session::BoundCar& bound, c
       observer_(folder_, hello(folder_.outing(), input), wall),
       sinks_(chosen(folder_, options.json ? static_cast<outputs::Sink&>(json_lines_) : terminal_, observer_,
                     also)),
-      run_(bound.car, core::Settings{}, options.rate_hz, sinks_) {}
+      run_(bound.car, core::Settings{}, options.rate_hz, sinks_, options.knowledge) {}
 
 void Stage::step(Frame& frame) {
     adapter_.apply(frame);

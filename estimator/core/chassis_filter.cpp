@@ -114,6 +114,8 @@ void ChassisFilter::predict(const ChassisInput& in) {
         per_along = 2.0 * air_share * cosine / speed;
         per_across = 2.0 * air_share * sine / speed;
     }
+    factor_per_along_ = per_along;
+    factor_per_across_ = per_across;
     wind_factor_ = std::clamp(wind_factor_, 0.5, 2.0);
     const double q = in.dynamic_pressure_pa * wind_factor_;
     const double factor_rear = flap_height_factor(in.dh_rear_m);

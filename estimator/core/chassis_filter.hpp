@@ -84,6 +84,9 @@ class ChassisFilter {
     void wind_is_unknown();
     // True over taken dynamic pressure, [wind]; that of the newest predict().
     [[nodiscard]] double wind_factor() const { return wind_factor_; }
+    // Derivatives of wind_factor() with the wind states, 1/(m/s).
+    [[nodiscard]] double wind_factor_per_along() const { return factor_per_along_; }
+    [[nodiscard]] double wind_factor_per_across() const { return factor_per_across_; }
     // Wind against the car as estimated, m/s; 0 where the air speed is measured.
     [[nodiscard]] double headwind_mps() const { return headwind_mps_; }
     // Forget the motion, keep what was learned of the car: after a gap in the data. Heights against static,
@@ -104,6 +107,7 @@ class ChassisFilter {
     ChassisStep step_;
     double wind_factor_ = 1.0;
     double headwind_mps_ = 0.0;
+    double factor_per_along_ = 0.0, factor_per_across_ = 0.0;
 };
 
 }  // namespace holdfast::core

@@ -23,6 +23,7 @@
 #include "estimator/core/results.hpp"
 #include "estimator/core/road_tuning.hpp"
 #include "estimator/core/settings.hpp"
+#include "estimator/core/slow_snapshot.hpp"
 #include "estimator/core/zones.hpp"
 #include "proto/vocabulary/frame.hpp"
 
@@ -54,6 +55,9 @@ class Engine {
 
     // The newest closing as a curve; false where there was none. Costs some milliseconds: for pictures.
     [[nodiscard]] bool regrowth(Regrowth& out) { return tracker_.regrowth(out); }
+
+    // The slow states, once a second of source time and not while a closing is judged; false in between.
+    [[nodiscard]] bool take_slow_snapshot(SlowSnapshot& out);
 
     // For those who look closer: tests and benchmarks.
     [[nodiscard]] const ChassisFilter& chassis() const { return chassis_; }
@@ -151,6 +155,7 @@ class Engine {
     bool command_fell_unseen_ = false;  // a closing was asked for while the flap's position was not to be had
     double command_fell_s_ = 0.0;
     std::uint64_t stale_ = 0;  // needed channels that are stale, bits as in Frame::present
+    double next_snapshot_s_ = 0.0;
     Estimate estimate_;
     FixedQueue<Closure, 16> closures_;
     FixedQueue<Alarm, 64> alarms_;

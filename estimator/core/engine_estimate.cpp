@@ -9,12 +9,32 @@
 namespace holdfast::core {
 namespace {
 
+constexpr double kSnapshotEvery_s = 1.0;
 constexpr double kLoadGainSd = 0.01;  // a load sensor's gain against the weight it was zeroed with
 constexpr double kDragWhole =
     0.012;  // mass, accelerometer and drive force together, relative to the drag area
 constexpr double kSlowFrom_mps = 20.0;
 
 }  // namespace
+
+bool Engine::take_slow_snapshot(SlowSnapshot& out) {
+    const double time_s = static_cast<double>(time_ns_) * 1e-9;
+    if (tracker_.bank().running() || time_s < next_snapshot_s_) return false;
+    next_snapshot_s_ = time_s + kSnapshotEvery_s;
+    auto& filter = chassis_.filter();
+    out.time_s = time_s;
+    for (std::size_t i = 0; i < kSlowCount; ++i) {
+        out.mean[i] = filter.x[kMovingCount + i];
+        out.kept[i] = filter.kept(kMovingCount + i);
+        out.added[i] = filter.added(kMovingCount + i);
+        for (std::size_t j = 0; j <= i; ++j) {
+            out.covariance[i * kSlowCount + j] = out.covariance[j * kSlowCount + i] =
+                filter.covariance(kMovingCount + i, kMovingCount + j);
+        }
+    }
+    filter.forget_changes();
+    return true;
+}
 
 const Estimate& Engine::estimate() {
     const auto& filter = chassis_.filter();
@@ -60,9 +80,11 @@ const Estimate& Engine::estimate() {
     } else {
         front[kFlapAreaFront] = -missing_open_;
         rear[kFlapAreaRear] = -factor_rear * missing_open_;
+        rear[kFlapSlope] = -x[kFlapAreaRear] * missing_open_ * dh_rear;
         area_front += front[kFlapAreaFront] * x[kFlapAreaFront];
         area_rear += rear[kFlapAreaRear] * x[kFlapAreaRear];
     }
+    const double air_front = area_front, air_rear = area_rear;
     // In the reference that is measured: wind, where it is not, stays in the areas.
     area_front *= wind_factor;
     area_rear *= wind_factor;
@@ -75,6 +97,23 @@ const Estimate& Engine::estimate() {
     };
     e.cla_front_m2 = {area_front, sd_of(front, area_front, front_ratio * missing.area_sd_m2)};
     e.cla_rear_m2 = {area_rear, sd_of(rear, area_rear, factor_rear * missing.area_sd_m2)};
+    e.front_other_variance = square(whole * area_front) + square(front_ratio * missing.area_sd_m2);
+    e.rear_other_variance = square(whole * area_rear) + square(factor_rear * missing.area_sd_m2);
+    if (closing) {
+        front[kFlapAreaFront] = -missing.share;
+        rear[kFlapAreaRear] = -factor_rear * missing.share;
+    }
+    for (std::size_t i = 0; i < kSlowCount; ++i) {
+        e.front_by_slow[i] = wind_factor * front[kMovingCount + i];
+        e.rear_by_slow[i] = wind_factor * rear[kMovingCount + i];
+    }
+    const auto by_wind = [&](ChassisState state, double factor) {
+        e.front_by_slow[slow(state)] = air_front * factor;
+        e.rear_by_slow[slow(state)] = air_rear * factor;
+    };
+    by_wind(kWindAlong, chassis_.wind_factor_per_along());
+    by_wind(kWindAcross, chassis_.wind_factor_per_across());
+    by_wind(kGust, 1.0);
     e.cda_m2 = longitudinal_.drag_area(dh_front, dh_rear, factor_rear * missing.share, missing.share_sd, q,
                                        mass_kg() * kGravity + q * (area_front + area_rear));
     e.cda_m2.value *= wind_factor;

@@ -25,6 +25,9 @@ enum EstimateFlag : std::uint32_t {
     kSensorDistrusted = 1U << 8,  // at least one channel is left out of the fusion
 };
 
+// States of the car in the vertical filter that are smoothed after the outing (slow_snapshot.hpp names them).
+inline constexpr std::size_t kSlowCount = 14;
+
 struct Estimate {
     std::int64_t time_ns = 0;
     std::uint32_t flags = kNotConverged;
@@ -38,6 +41,12 @@ struct Estimate {
     Quantity downforce_front_n;
     Quantity downforce_rear_n;
     Quantity drag_n;
+    // For the smoother: derivative of cla_front_m2 and cla_rear_m2 with each slow state, and the part of
+    // their variances that the slow states do not carry.
+    std::array<double, kSlowCount> front_by_slow{};
+    std::array<double, kSlowCount> rear_by_slow{};
+    double front_other_variance = 0.0;
+    double rear_other_variance = 0.0;
     Quantity flap_area_m2;  // rear downforce area that the flap switches
 };
 

@@ -36,6 +36,8 @@ class UdFilter {
     // P has to stay the rest's own: column i of U carries what i shares with the states before it, so their
     // share is given back as rank-one terms before the column is cleared.
     void reset_state(std::size_t i, Real variance) {
+        kept_[i] = 0;
+        added_[i] = variance;
         Vector shared{};
         for (std::size_t k = 0; k < i; ++k) shared[k] = u_[i][k];
         const Real weight = d_[i];
@@ -122,11 +124,14 @@ class UdFilter {
     // State i times a factor (its estimate is the caller's): row i of U scales, so that its column is scaled
     // back and its own diagonal takes the square.
     void scale_state(std::size_t i, Real factor) {
+        kept_[i] *= factor;
+        added_[i] *= factor * factor;
         for (std::size_t j = i + 1; j < N; ++j) u_[j][i] *= factor;
         for (std::size_t k = 0; k < i; ++k) u_[i][k] /= factor;
         d_[i] *= factor * factor;
     }
     void add_noise(std::size_t i, Real added_variance) {
+        added_[i] += added_variance;
         Vector a{};
         a[i] = 1;
         add_rank_one(a, added_variance, i);
@@ -161,6 +166,15 @@ class UdFilter {
         }
     }
 
+    // What became of each state by itself since forget_changes(), measurements aside: it was multiplied by
+    // kept() and given the variance added(). For whoever smooths the slow states backwards.
+    [[nodiscard]] Real kept(std::size_t i) const { return kept_[i]; }
+    [[nodiscard]] Real added(std::size_t i) const { return added_[i]; }
+    void forget_changes() {
+        kept_.fill(1);
+        added_.fill(0);
+    }
+
     // Column j of U (entries 0..j); for time updates and for conditioning on the last state.
     [[nodiscard]] std::array<Real, N>& column(std::size_t j) { return u_[j]; }
     [[nodiscard]] const std::array<Real, N>& column(std::size_t j) const { return u_[j]; }
@@ -168,6 +182,11 @@ class UdFilter {
     [[nodiscard]] Real diagonal(std::size_t j) const { return d_[j]; }
 
   private:
+    [[nodiscard]] static constexpr Vector ones() {
+        Vector v{};
+        v.fill(1);
+        return v;
+    }
     [[nodiscard]] Real project(const Vector& h, std::size_t j) const {
         const Real* column = u_[j].data();
         Real f = h[j];
@@ -180,6 +199,8 @@ class UdFilter {
     Vector f_{};
     Vector v_{};
     Vector gain_{};
+    Vector kept_ = ones();
+    Vector added_{};
     Real noise_variance_ = 1;
     Real innovation_variance_ = 1;
 };

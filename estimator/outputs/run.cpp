@@ -22,10 +22,12 @@ std::int64_t next_multiple(std::int64_t time_ns, std::int64_t period_ns) {
 
 }  // namespace
 
-Run::Run(const core::Car& car, const core::Settings& settings, double rate_hz, std::vector<Sink*> sinks)
+Run::Run(const core::Car& car, const core::Settings& settings, double rate_hz, std::vector<Sink*> sinks,
+         Knowledge knowledge)
     : engine_(std::make_unique<core::Engine>(car, settings)),
       period_ns_(std::llround(1e9 / rate_hz)),
-      sinks_(std::move(sinks)) {
+      sinks_(std::move(sinks)),
+      knowledge_(knowledge) {
     for (Sink* sink : sinks_) sink->on_begin(*this);
 }
 
@@ -60,7 +62,15 @@ void Run::step(const Frame& frame) {
     hand_on_events();
     if (time_ns >= next_estimate_ns_) {
         next_estimate_ns_ = next_multiple(time_ns, period_ns_);
-        for (Sink* sink : sinks_) sink->on_estimate(engine_->estimate());
+        if (knowledge_ == Knowledge::of_the_outing) {
+            held_.push_back(engine_->estimate());
+        } else {
+            for (Sink* sink : sinks_) sink->on_estimate(engine_->estimate());
+        }
+    }
+    if (core::SlowSnapshot snapshot;
+        knowledge_ == Knowledge::of_the_outing && engine_->take_slow_snapshot(snapshot)) {
+        smoother_.add(snapshot);
     }
     if (time_ns >= next_health_ns_) {
         next_health_ns_ = next_multiple(time_ns, kHealthPeriodNs);
@@ -71,11 +81,21 @@ void Run::step(const Frame& frame) {
 void Run::finish(bool complete, std::string reason) {
     engine_->finish();
     hand_on_events();
+    hand_on_smoothed();
     hand_on_health(last_ns_);
     end_.complete = complete;
     end_.reason = std::move(reason);
     end_.duration_s = seconds(last_ns_ - first_ns_);
     for (Sink* sink : sinks_) sink->on_end(end_);
+}
+
+void Run::hand_on_smoothed() {
+    if (knowledge_ != Knowledge::of_the_outing) return;
+    smoother_.solve();
+    for (core::Estimate& estimate : held_) {
+        smoother_.apply(estimate);
+        for (Sink* sink : sinks_) sink->on_estimate(estimate);
+    }
 }
 
 void Run::hand_on_events() {

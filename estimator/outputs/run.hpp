@@ -11,6 +11,7 @@
 #include "estimator/core/car.hpp"
 #include "estimator/core/settings.hpp"
 #include "estimator/outputs/sink.hpp"
+#include "estimator/outputs/smoothing.hpp"
 #include "proto/vocabulary/frame.hpp"
 
 namespace holdfast::core {
@@ -21,11 +22,15 @@ namespace holdfast::outputs {
 
 inline constexpr double kDefaultRateHz = 50.0;
 
+// Estimates as they come, each from what was known then; or all at the end, each from the whole outing.
+enum class Knowledge : std::uint8_t { of_the_moment, of_the_outing };
+
 class Run : private Inquiry {
   public:
     // Estimates are handed on at `rate_hz`: the first one at or after each multiple of the period. The sinks
     // must outlive the run.
-    Run(const core::Car& car, const core::Settings& settings, double rate_hz, std::vector<Sink*> sinks);
+    Run(const core::Car& car, const core::Settings& settings, double rate_hz, std::vector<Sink*> sinks,
+        Knowledge knowledge = Knowledge::of_the_moment);
 
     virtual ~Run();
     Run(const Run&) = delete;
@@ -41,11 +46,15 @@ class Run : private Inquiry {
     const core::HealthTable& health() const override;
     bool regrowth(core::Regrowth& out) override;
     void hand_on_events();
+    void hand_on_smoothed();
     void hand_on_health(std::int64_t time_ns);
 
     std::unique_ptr<core::Engine> engine_;  // large: not on the stack
     std::int64_t period_ns_;
     std::vector<Sink*> sinks_;
+    Knowledge knowledge_;
+    Smoother smoother_;
+    std::vector<core::Estimate> held_;  // until the outing is over
     RunEnd end_;
     std::int64_t first_ns_ = 0;
     std::int64_t last_ns_ = 0;
