@@ -34,11 +34,11 @@ TEST_CASE("a log that breaks half way yields its first half's results, marked in
 
     const std::string whole = folder / "whole";
     const std::string broken = folder / "broken";
-    REQUIRE(
-        run("holdfast", {"replay", whole_log, "--car", demo_car(), "--out", whole}, folder.path()).status ==
-        0);
-    const Ended ended =
-        run("holdfast", {"replay", broken_log, "--car", demo_car(), "--out", broken}, folder.path());
+    REQUIRE(run("holdfast", {"replay", whole_log, "--car", demo_car(), "--out", whole, "--as-live"},
+                folder.path())
+                .status == 0);
+    const Ended ended = run(
+        "holdfast", {"replay", broken_log, "--car", demo_car(), "--out", broken, "--as-live"}, folder.path());
 
     CHECK(ended.status == 3);
     CHECK_THAT(ended.err, Contains("broken.csv") && Contains("line"));

@@ -43,7 +43,7 @@ struct Library {
 };
 
 const std::vector<Library> kLibraries{
-    {"Eigen/", {"estimator/core"}, true},
+    {"Eigen/", {"estimator/core", "estimator/outputs"}, true},
     {"toml", {"estimator/session"}, false},
     {"nlohmann/", {"estimator/outputs", "estimator/wall"}, false},
     {"boost/", {"estimator/wall"}, false},
