@@ -1,6 +1,6 @@
 #!/usr/bin/env bash
-# Installs those packages of .ci/packages that are missing, with sudo where the caller is not root, and the wall
-# page's plotting library (npm; the lock file says which). Silent where nothing is missing.
+# Installs those packages of .ci/packages that are missing, with sudo where the caller is not root, and what
+# the wall page and its tests need from npm (the lock files say what). Silent where nothing is missing.
 set -euo pipefail
 here=$(cd "$(dirname "${BASH_SOURCE[0]}")" && pwd)
 
@@ -12,9 +12,11 @@ done <"$here/packages"
 # Where a newer Node.js than Debian's is installed, its npm serves as well.
 command -v npm >/dev/null || missing+=(nodejs npm)
 
-page=$here/../estimator/wall/page
-page_ready() { [ "$page/node_modules/.package-lock.json" -nt "$page/package-lock.json" ]; }
-[ ${#missing[@]} -gt 0 ] || ! page_ready || exit 0
+stale=()
+for folder in "$here/../estimator/wall/page" "$here/../tests/browser"; do
+    [ "$folder/node_modules/.package-lock.json" -nt "$folder/package-lock.json" ] || stale+=("$folder")
+done
+[ ${#missing[@]} -gt 0 ] || [ ${#stale[@]} -gt 0 ] || exit 0
 
 log=$(mktemp)
 trap 'rm -f "$log"' EXIT
@@ -42,8 +44,8 @@ if [ ${#missing[@]} -gt 0 ]; then
     quietly "${as_root[@]}" env DEBIAN_FRONTEND=noninteractive \
         apt-get install -y -qq --no-install-recommends "${missing[@]}"
 fi
-if ! page_ready; then
-    echo "Installing the wall page's plotting library"
-    quietly npm ci --prefix "$page" --omit=dev --ignore-scripts --no-audit --no-fund
-    touch "$page/node_modules/.package-lock.json"
-fi
+for folder in "${stale[@]}"; do
+    echo "Installing from npm: ${folder#"$here/../"}"
+    quietly npm ci --prefix "$folder" --ignore-scripts --no-audit --no-fund
+    touch "$folder/node_modules/.package-lock.json"
+done

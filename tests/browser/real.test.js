@@ -103,6 +103,7 @@ async function closingsAsInFile(page) {
   await page.keyboard.press('1');
   for (const row of [...rows].reverse()) {
     await stands(page, '#regrowth', `closing ${row.closure}, lap ${row.lap}, zone ${row.zone}`);
+    await stands(page, '#answers', `closing ${row.closure}, lap`);
     const answers = await read(page, '#answers');
     assert.ok(answers.includes({full: 'Back in time', short: 'Short at the brakes', unclear: 'Unclear'}[row.verdict] ?? 'no verdict'), answers);
     assert.equal(/Slow: |Slow |Settles/.test(answers), row.slow === '1', answers);
@@ -122,7 +123,8 @@ async function closingsAsInFile(page) {
     near(Number(brakes?.[1]), String((Number(row.time_brake) - Number(row.time_closed)) * 1000), `closing ${row.closure}, brakes`);
     // The curve itself passes 95 % where the file says so.
     const crossing = await page.evaluate(crossing95);
-    near(crossing, String(Number(row.t95) * 1000), `closing ${row.closure}: curve at 95 %`);
+    // Within the straight lines between its points, which are 20 ms apart.
+    assert.ok(Math.abs(crossing - Number(row.t95) * 1000) < 8, `closing ${row.closure}: the curve passes 95 % at ${crossing} ms, ${row.t95} s in the file`);
     await page.keyboard.press('ArrowLeft');
   }
 }

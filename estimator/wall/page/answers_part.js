@@ -66,5 +66,5 @@ export function answersPart(wall, root) {
     return sensorAnswer(wall.outing.health);
   }
 
-  return {needs: ['hello', 'closures', 'closure', 'regrowths', 'regrowth', 'health', 'now', 'end', 'chosen', 'link', 'preferences'], least_ms: 50, draw};
+  return {needs: ['hello', 'closures', 'closure', 'regrowths', 'regrowth', 'health', 'now', 'end', 'chosen', 'link', 'preferences'], draw};
 }

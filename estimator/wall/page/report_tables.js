@@ -12,12 +12,20 @@ import {factList} from "./report_data.js";
 /** @typedef {import('./outing.js').Outing} Outing */
 /** @typedef {import('./units.js').UnitChoice} UnitChoice */
 
-/** @param {string[]} headings @param {(Node|string)[][]} rows @param {number} words columns at the left that are words */
-function table(headings, rows, words) {
+/** What may be wider than a phone is scrolled by itself, by keyboard too. @param {string} name */
+function wide(name) {
+  return {class: 'wide', tabindex: 0, role: 'region', 'aria-label': name};
+}
+
+/**
+ * @param {string} name @param {string[]} headings @param {(Node|string)[][]} rows
+ * @param {number} words columns at the left that are words
+ */
+function table(name, headings, rows, words) {
   const cell = (/** @type {number} */ i) => ({class: i < words ? null : 'number'});
   return html(
     'div',
-    {class: 'wide'},
+    wide(name),
     html('table', {}, html('thead', {}, html('tr', {}, ...headings.map((h, i) => html('th', {scope: 'col', ...cell(i)}, h)))), html('tbody', {}, ...rows.map((row) => html('tr', {}, ...row.map((value, i) => html('td', cell(i), value)))))),
   );
 }
@@ -58,7 +66,7 @@ function closureRow(c, units) {
 export function closuresSection(outing, units) {
   const headings = ['At the brakes', 'No.', 'Lap', 'Zone', 'Asked for', 'Speed', '95 % back, ms (95 %)', 'Chords', 'Margin, ms', `Missing, ${unitOf(units, 'force').word}`, 'P(short)', 'P(slow)'];
   const closures = outing.closuresInOrder();
-  const content = closures.length ? table(headings, closures.map((c) => closureRow(c, units)), 1) : html('p', {}, 'None.');
+  const content = closures.length ? table('Closings', headings, closures.map((c) => closureRow(c, units)), 1) : html('p', {}, 'None.');
   return html('section', {id: 'closings'}, html('h2', {}, 'Closings'), content);
 }
 
@@ -87,7 +95,7 @@ export function areasSection(outing, units) {
     rows.push([row.flap, speeds, ...row.areas.map((q) => area(q, units)), fixed(row.rows, 0)]);
   }
   const note = 'Coefficient times area, steady flow only. By speed: from the rows at 10 Hz. Neighbouring estimates share their errors, so ± does not fall with their number.';
-  return html('section', {id: 'areas'}, html('h2', {}, 'Areas by flap and speed'), rows.length ? table(headings, rows, 2) : html('p', {}, 'None: no steady flow was seen.'), html('p', {class: 'quiet'}, note));
+  return html('section', {id: 'areas'}, html('h2', {}, 'Areas by flap and speed'), rows.length ? table('Areas', headings, rows, 2) : html('p', {}, 'None: no steady flow was seen.'), html('p', {class: 'quiet'}, note));
 }
 
 /** @param {Outing} outing @param {UnitChoice} units */
@@ -95,7 +103,7 @@ export function sensorsSection(outing, units) {
   const {table: node, rows} = sensorTable('Health of each channel at the end');
   const names = new Map((outing.hello?.channels ?? []).map((c) => [c.name, c.unit]));
   rows.append(...sensorOrder(outing.health).map((h) => sensorRow(h, names.get(h.name) ?? '', units)));
-  return html('section', {id: 'sensors'}, html('h2', {}, 'Sensors at the end'), html('div', {class: 'wide'}, node));
+  return html('section', {id: 'sensors'}, html('h2', {}, 'Sensors at the end'), html('div', wide('Sensors'), node));
 }
 
 /** @param {Outing} outing */
