@@ -1,6 +1,7 @@
 // SPDX-License-Identifier: MIT
 #include "estimator/wall/history.hpp"
 
+#include <algorithm>
 #include <utility>
 
 namespace holdfast::wall {
@@ -54,6 +55,12 @@ void ThinnedHistory::add(const Row& row) {
     if (rows_.size() < capacity_) return;
     rows_ = every(rows_, 2);
     stride_ *= 2;
+}
+
+Row* ThinnedHistory::find(std::int64_t time_ns) {
+    const auto at = std::lower_bound(rows_.begin(), rows_.end(), time_ns,
+                                     [](const Row& row, std::int64_t time) { return row.time_ns < time; });
+    return at != rows_.end() && at->time_ns == time_ns ? &*at : nullptr;
 }
 
 }  // namespace holdfast::wall

@@ -47,6 +47,8 @@ class ThinnedHistory {
     [[nodiscard]] std::string json() const {
         return history_json(rows_, kHistoryStep_s * static_cast<double>(stride_));
     }
+    // The row of this instant where it was kept, else nullptr; good until the next add().
+    [[nodiscard]] Row* find(std::int64_t time_ns);
     [[nodiscard]] std::size_t size() const { return rows_.size(); }
 
   private:

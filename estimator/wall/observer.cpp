@@ -30,6 +30,22 @@ bool due(std::int64_t time_ns, std::int64_t& next_ns, std::int64_t period_ns) {
     return true;
 }
 
+void put(const core::Estimate& e, Row& row) {
+    const auto set = [&](std::size_t place, const core::Quantity& q) {
+        row.value[place] = q.value;
+        row.value[place + 1] = q.sd;
+    };
+    row.flags = e.flags;
+    row.value[column("speed")] = e.speed_mps;
+    row.value[column("attached")] = e.attached.value;
+    set(column("cla_front"), e.cla_front_m2);
+    set(column("cla_rear"), e.cla_rear_m2);
+    set(column("cda"), e.cda_m2);
+    set(column("downforce_front"), e.downforce_front_n);
+    set(column("downforce_rear"), e.downforce_rear_n);
+    set(column("drag"), e.drag_n);
+}
+
 double wall_clock_s() {
     return std::chrono::duration<double>(std::chrono::system_clock::now().time_since_epoch()).count();
 }
@@ -79,24 +95,16 @@ void Observer::remember(const Frame& frame) {
     keep(Channel::lap_distance, row_.lap_distance_m);
 }
 
-void Observer::tell_row(const core::Estimate& e) {
-    row_.flags = e.flags;
-    const auto set = [&](std::size_t place, const core::Quantity& q) {
-        row_.value[place] = q.value;
-        row_.value[place + 1] = q.sd;
-    };
-    row_.value[column("speed")] = e.speed_mps;
+void Observer::tell_row(const core::Estimate& estimate) {
+    put(estimate, row_);
     row_.value[column("load_front")] = corner_load_n_[0] + corner_load_n_[1];
     row_.value[column("load_rear")] = corner_load_n_[2] + corner_load_n_[3];
-    row_.value[column("attached")] = e.attached.value;
-    set(column("cla_front"), e.cla_front_m2);
-    set(column("cla_rear"), e.cla_rear_m2);
-    set(column("cda"), e.cda_m2);
-    set(column("downforce_front"), e.downforce_front_n);
-    set(column("downforce_rear"), e.downforce_rear_n);
-    set(column("drag"), e.drag_n);
     if (row_.history) history_.add(row_);
     tell(row_);
+}
+
+void Observer::on_estimate(const core::Estimate& estimate) {
+    if (Row* row = history_.find(estimate.time_ns)) put(estimate, *row);
 }
 
 void Observer::tell_health(std::int64_t time_ns) {

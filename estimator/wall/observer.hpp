@@ -26,6 +26,9 @@ class Observer : public outputs::Sink {
 
     void on_begin(outputs::Inquiry& inquiry) override { inquiry_ = &inquiry; }
     void on_frame(const Frame& frame) override;
+    // Where the estimates come smoothed at the end, the report shows those; the page stays with what was
+    // known at each moment.
+    void on_estimate(const core::Estimate& estimate) override;
     void on_closure(const core::Closure& closure) override;
     void on_alarm(const core::Alarm& alarm) override;
     // Writes report.html into the folder.

@@ -73,3 +73,12 @@ TEST_CASE("the report's history never exceeds its capacity and keeps an even ste
     for (std::size_t i = 1; i < t.size(); ++i) CHECK(t[i] - t[i - 1] == Approx(j.at("step_s").get<double>()));
     CHECK(t.front() == 0.0);
 }
+
+TEST_CASE("a row of the report's history is found by its instant") {
+    wall::ThinnedHistory history(100);
+    for (std::size_t i = 0; i < 150; ++i) history.add(tenth(i));  // every other one is kept
+    REQUIRE(history.find(tenth(40).time_ns) != nullptr);
+    CHECK(history.find(tenth(40).time_ns)->time_ns == tenth(40).time_ns);
+    CHECK(history.find(tenth(41).time_ns) == nullptr);
+    CHECK(history.find(tenth(1000).time_ns) == nullptr);
+}
