@@ -51,6 +51,11 @@ function talk(t, change = {}) {
   return () => clearInterval(timer);
 }
 
+/** Waits until Zones shows so many closings. @param {import('playwright-core').Page} page @param {number} count */
+async function closingsCount(page, count) {
+  await page.waitForFunction((n) => document.querySelectorAll('.zone-closing').length === n, count);
+}
+
 test('an empty outing says so, and nothing reads as fine', async () => {
   const page = await open(soFar(0));
   await stands(page, '#answers', 'No closing yet');
@@ -286,7 +291,7 @@ test('late join and reload show the outing so far', async () => {
   server.greeting = soFar(T + 20);
   await page.reload();
   await stands(page, '#clock', clock(T + 19.9));
-  assert.equal(await page.locator('.zone-closing').count(), 18);
+  await closingsCount(page, 18);
   await page.getByRole('button', {name: 'whole outing'}).click();
   await stands(page, '.trace-window', `0:00.0 to ${clock(T + 19.9)}`);
 });
@@ -306,10 +311,10 @@ test('link lost is said at once; it comes back by itself with all of the outing,
   server.open = true;
   await page.locator('#lost').waitFor({state: 'hidden'});
   await stands(page, '#clock', clock(T + 4.9));
-  assert.equal(await page.locator('.zone-closing').count(), 18);
+  await closingsCount(page, 18);
   server.say(...soFar(20));
   await stands(page, '#clock', clock(19.9));
-  assert.equal(await page.locator('.zone-closing').count(), 1);
+  await closingsCount(page, 1);
 });
 
 test('keyboard alone: parts, closings, traces, help, options', async () => {

@@ -61,7 +61,7 @@ test('a live outing from its first second to its end', async () => {
     await stands(page, '#link', 'link lost');
     await context.setOffline(false);
     await stands(page, '#link', 'link up');
-    assert.ok((await page.locator('.zone-closing').count()) >= 1, 'what was there is there again');
+    await until(async () => (await page.locator('.zone-closing').count()) >= 1, 5000, 'what was there is there again');
 
     // Reload in mid-outing.
     await page.reload();
