@@ -14,6 +14,8 @@ struct Figures {
     std::size_t outings = 0, closings = 0, found = 0, invented = 0, judged = 0;
     double tau_z_rms = 0.0;  // first-order cases: error over stated sd
     double tau_rms_ms = 0.0;
+    double tau_over_bound_rms =
+        0.0;  // error over the bound from the data until a second after the flap is shut
     double t95_bias_ms = 0.0, t95_rms_ms = 0.0, t95_inside = 0.0;
     double slow_flagged = 0.0, others_flagged = 0.0;  // shares
     double part_flagged = 0.0;

@@ -14,6 +14,8 @@
 #include "estimator/session/bind.hpp"
 #include "estimator/session/car_file.hpp"
 #include "firmware_host/car/outing.hpp"
+#include "tests/bench/accuracy/known_closing.hpp"
+#include "tests/temp_folder.hpp"
 
 namespace holdfast::bench {
 namespace {
@@ -24,15 +26,10 @@ constexpr double kMatch_s = 0.15;    // found and true closing lie this near, or
 constexpr std::int64_t kEvery_ns = 20'000'000;
 
 session::CarFile workshop_car(const sim::Scenario& scenario) {
-    // Unique by scenario and seed: outings run side by side.
-    const auto path = std::filesystem::temp_directory_path() /
-                      ("holdfast-accuracy-" + scenario.name + "-" + std::to_string(scenario.seed) + ".toml");
-    {
-        std::ofstream file(path);
-        file << sim::car_file_text(scenario);
-    }
+    const testing::TempFolder folder;  // outings run side by side
+    const auto path = folder / "car.toml";
+    std::ofstream(path) << sim::car_file_text(scenario);
     auto car = session::read_car_file(path.string());
-    std::filesystem::remove(path);
     if (!car)
         throw std::runtime_error("car file of " + scenario.name + ": " + to_string(car.errors().front()));
     return *car;
@@ -52,7 +49,8 @@ sim::Scenario scenario_with_faults(const std::string& name, std::uint64_t seed) 
 void match(OutingResult& result, const sim::Outing& outing, const std::vector<core::Closure>& found) {
     std::vector<bool> taken(found.size(), false);
     for (const sim::TruthClosure& truth : outing.closures()) {
-        ClosurePair pair{truth, outing.scenario().flap.shape, std::nullopt};
+        ClosurePair pair{truth, outing.scenario().flap.shape, std::nullopt, std::nullopt};
+        if (const auto known = known_closing(outing, truth)) pair.bound = tau_bound(*known);
         for (std::size_t i = 0; i < found.size(); ++i) {
             if (taken[i] || std::abs(found[i].time_closed_s - truth.time_closed_s) > kMatch_s) continue;
             pair.found = found[i];

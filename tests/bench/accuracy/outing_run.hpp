@@ -11,6 +11,7 @@
 #include "firmware_host/car/parameters.hpp"
 #include "firmware_host/car/sensors.hpp"
 #include "firmware_host/car/truth.hpp"
+#include "tests/bench/accuracy/bound.hpp"
 
 namespace holdfast::bench {
 
@@ -18,6 +19,7 @@ struct ClosurePair {
     sim::TruthClosure truth;
     sim::Reattachment shape = sim::Reattachment::first_order;
     std::optional<core::Closure> found;
+    std::optional<TauBound> bound;  // first-order closings that come back whole
 };
 
 // Estimate against truth of one area, above 50 m/s once the filter has converged.
