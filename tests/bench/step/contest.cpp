@@ -2,14 +2,15 @@
 #include "tests/bench/step/contest.hpp"
 
 #include <algorithm>
-#include <chrono>
 #include <cmath>
 #include <limits>
+
+#include "tests/bench/step/processor_time.hpp"
 
 namespace holdfast::bench {
 namespace {
 
-// Short against the time slices that the system gives to others.
+// Short, so that a round meets one state of the caches and of the clock rate.
 constexpr std::size_t kRoundSteps = 200;
 
 double quantile(std::vector<double> values, double share) {
@@ -22,10 +23,9 @@ double run_us_per_step(const LinearModel& model, ComparedFilter& filter, std::si
     const std::size_t first = round * kRoundSteps % model.steps.size();
     const std::size_t last = std::min(first + kRoundSteps, model.steps.size());
     if (first == 0) filter.restart();
-    const auto begin = std::chrono::steady_clock::now();
+    const double begin = processor_us();
     for (std::size_t k = first; k < last; ++k) filter.step(model.steps[k]);
-    const std::chrono::duration<double, std::micro> spent = std::chrono::steady_clock::now() - begin;
-    return spent.count() / static_cast<double>(last - first);
+    return (processor_us() - begin) / static_cast<double>(last - first);
 }
 
 }  // namespace

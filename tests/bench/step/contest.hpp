@@ -26,7 +26,7 @@ struct Disagreement {
                                    ComparedFilter& other);
 
 struct Cost {
-    double step_us = 0.0;  // median of the rounds
+    double step_us = 0.0;  // processor time, median of the rounds
     double ratio = 0.0;    // cost over that of the first contender in the same round, median
     double ratio_low = 0.0, ratio_high = 0.0;  // quartiles
 };

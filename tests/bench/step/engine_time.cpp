@@ -1,8 +1,6 @@
 // SPDX-License-Identifier: MIT
 #include "tests/bench/step/engine_time.hpp"
 
-#include <time.h>
-
 #include <algorithm>
 #include <chrono>
 #include <functional>
@@ -12,6 +10,7 @@
 #include "estimator/outputs/folder.hpp"
 #include "estimator/outputs/run.hpp"
 #include "estimator/session/log_source.hpp"
+#include "tests/bench/step/processor_time.hpp"
 
 namespace holdfast::bench {
 namespace {
@@ -20,13 +19,6 @@ using core::Engine;
 
 constexpr std::int64_t kEstimate_ns = 20'000'000;  // 50 Hz, as in estimates.csv
 constexpr double kDriftEvery = 8.0;                // frames, at 400 Hz
-
-// Processor time of this thread: what others do on the machine is not in it.
-double processor_us() {
-    timespec now{};
-    ::clock_gettime(CLOCK_THREAD_CPUTIME_ID, &now);
-    return 1e6 * static_cast<double>(now.tv_sec) + 1e-3 * static_cast<double>(now.tv_nsec);
-}
 
 double median(std::vector<double> values) {
     const auto middle = values.begin() + static_cast<std::ptrdiff_t>(values.size() / 2);
