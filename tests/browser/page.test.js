@@ -237,6 +237,36 @@ test('alarms: a new one is added without disturbing the others, and the focus st
   await stands(page, '#alarms', 'over by itself, came 3 times');
 });
 
+test('sound: silent unless asked for, then once for each new alarm', async () => {
+  const page = await open(soFar(T));
+  await stands(page, '#alarms', 'first of 2');
+  await page.evaluate(() => {
+    const heard = /** @type {any} */ (globalThis);
+    heard.tones = 0;
+    const Real = OscillatorNode;
+    heard.OscillatorNode = class extends Real {
+      constructor(/** @type {BaseAudioContext} */ context, /** @type {OscillatorOptions} */ options) {
+        super(context, options);
+        heard.tones += 1;
+      }
+    };
+  });
+  const tones = () => page.evaluate(() => /** @type {any} */ (globalThis).tones);
+  server.say({kind: 'alarm', ...alarm(20, {t: 351, severity: 'low', text: 'first new'})});
+  await stands(page, '#alarms', 'first new');
+  assert.equal(await tones(), 0);
+  await page.keyboard.press('s');
+  server.say({kind: 'alarm', ...alarm(21, {t: 351, severity: 'low', text: 'second new'})});
+  await stands(page, '#alarms', 'second new');
+  assert.equal(await tones(), 1);
+  server.say({kind: 'alarm', ...alarm(21, {t: 351, severity: 'low', text: 'second new', times: 2})});
+  await stands(page, '#alarms', 'came 2 times');
+  assert.equal(await tones(), 1, 'the same alarm again is no new one');
+  server.say({kind: 'alarm', ...alarm(22, {t: 351, severity: 'high', text: 'third new'})});
+  await stands(page, '#alarms', 'third new');
+  assert.equal(await tones(), 5);
+});
+
 test('sensors: trust, gate, rate, gaps, last value, since when and by what sign', async () => {
   const page = await open(soFar(T, {fault: true}));
   await stands(page, '#sensors', 'load_rr');

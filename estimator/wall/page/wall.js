@@ -111,7 +111,7 @@ export class Wall {
 /** Width, height and line height of a node, in px. @param {Element} node */
 export function measure(node) {
   const box = node.getBoundingClientRect();
-  return {width: Math.max(160, Math.round(box.width)), height: Math.max(90, Math.round(box.height)), em: rem() * 0.8};
+  return {width: Math.max(80, Math.round(box.width)), height: Math.max(90, Math.round(box.height)), em: rem() * 0.8};
 }
 
 /** The root's font size in px: what one line of text is measured by. */
