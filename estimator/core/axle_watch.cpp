@@ -8,11 +8,12 @@
 namespace holdfast::core {
 namespace {
 
-constexpr double kBrokenFor_s = 0.25;    // before a name is given: kerbs are shorter
-constexpr double kUndecidedFor_s = 1.0;  // then what disagrees is said, without a culprit
-constexpr double kRestoredFor_s = 2.0;   // before a named channel is believed again
-constexpr double kMovingFrom_mps = 8.0;  // stiction and pit stops say nothing
-constexpr double kHalf = 0.5;            // two residuals agree in size when their ratio is above this
+constexpr double kBrokenFor_s = 0.25;     // before a name is given: kerbs are shorter
+constexpr double kSlowBrokenFor_s = 0.8;  // the second's mean outlasts a kerb by so much
+constexpr double kUndecidedFor_s = 1.5;   // then what disagrees is said, without a culprit
+constexpr double kRestoredFor_s = 2.0;    // before a named channel is believed again
+constexpr double kMovingFrom_mps = 8.0;   // stiction and pit stops say nothing
+constexpr double kHalf = 0.5;             // two residuals agree in size when their ratio is above this
 
 std::uint64_t bit(Channel c) {
     return std::uint64_t{1} << index(c);
@@ -98,7 +99,7 @@ Quantity AxleWatch::rate_npm() const {
 }
 
 void AxleWatch::judge(double elapsed_s, std::int64_t time_ns, double speed_mps, double accel_y_mps2,
-                      bool accel_y_ok, HealthTable& health) {
+                      bool accel_y_seen, bool accel_y_good, HealthTable& health) {
     const auto good = [&](Channel c) { return health[index(c)].trust == Trust::good; };
     const bool loads = left_mean_.any() && right_mean_.any();
     bool heights_good = true;
@@ -123,15 +124,15 @@ void AxleWatch::judge(double elapsed_s, std::int64_t time_ns, double speed_mps, 
         dh_before_m_ = dh;
     }
     have_before_ = heights;
-    if (loads && accel_y_ok && moving) {
+    if (loads && accel_y_seen && moving) {
         sides_.observe({accel_y_mps2, 1.0}, left_mean_.value() - right_mean_.value(), elapsed_s,
-                       loads_good && !strained_);
+                       loads_good && accel_y_good && !strained_);
     }
-    if (has_pair_ && height_mean_[pair_left_].any() && height_mean_[pair_right_].any() && accel_y_ok &&
+    if (has_pair_ && height_mean_[pair_left_].any() && height_mean_[pair_right_].any() && accel_y_seen &&
         moving) {
         roll_.observe({accel_y_mps2, 1.0},
                       height_mean_[pair_left_].value() - height_mean_[pair_right_].value(), elapsed_s,
-                      heights_good && !strained_);
+                      heights_good && accel_y_good && !strained_);
     }
     left_mean_ = right_mean_ = Mean{};
     height_mean_.fill(Mean{});
@@ -150,7 +151,8 @@ void AxleWatch::judge(double elapsed_s, std::int64_t time_ns, double speed_mps, 
         broken_s_ = 0.0;
         strained_ = false;
     }
-    if (broken_s_ >= kBrokenFor_s && named_ == 0) look_for_culprit(health);
+    const double enough_s = fast ? kBrokenFor_s : kSlowBrokenFor_s;
+    if (accel_y_good && broken_s_ >= enough_s && named_ == 0) look_for_culprit(health);
     look_for_return(elapsed_s, health);
 }
 

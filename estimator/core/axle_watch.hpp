@@ -23,10 +23,10 @@ class AxleWatch {
 
     // Samples of a frame, distrusted ones too (their return is to be noticed).
     void see(const Frame& frame);
-    // Every kEvery_s: compares, names. accel_y_ok: the lateral acceleration can be used.
+    // Every kEvery_s: compares, names. accel_y: seen, and trusted enough to learn from.
     static constexpr double kEvery_s = 0.02;
-    void judge(double elapsed_s, std::int64_t time_ns, double speed_mps, double accel_y_mps2, bool accel_y_ok,
-               HealthTable& health);
+    void judge(double elapsed_s, std::int64_t time_ns, double speed_mps, double accel_y_mps2,
+               bool accel_y_seen, bool accel_y_good, HealthTable& health);
 
     // left - right as the lateral acceleration has it, N, and the mean size of its error.
     [[nodiscard]] double side_difference_n(double accel_y_mps2) const {

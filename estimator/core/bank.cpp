@@ -72,6 +72,14 @@ double ReattachmentBank::advance(double time_s, double dt_s, double flap_positio
     return base_missing_;
 }
 
+void ReattachmentBank::flap_shut(double time_s) {
+    for (std::size_t s = 0; s < kStartCount; ++s) {
+        if (!std::isnan(passed_time_s_[s])) continue;
+        passed_time_s_[s] = time_s;
+        start_time_s_[s] = time_s + kStartRules[s].chords * chord_time_s_;
+    }
+}
+
 void ReattachmentBank::share_of_all(double time_s, double dt_s) {
     if (dt_s != decay_dt_s_) {
         decay_dt_s_ = dt_s;

@@ -73,6 +73,10 @@ class ReattachmentBank {
     // share.
     double advance(double time_s, double dt_s, double flap_position);
 
+    // The flap is shut: positions that it was not seen to pass (a sensor whose zero has moved) it has passed
+    // now.
+    void flap_shut(double time_s);
+
     // After predict: carry the deviations through the same step.
     void propagate(const ChassisStep& step);
 

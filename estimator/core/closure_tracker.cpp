@@ -50,6 +50,7 @@ void ClosureTracker::begin(const AeroNow& now, double time_command_s, double cho
 void ClosureTracker::shut(double time_moved_s, double time_shut_s) {
     if (!waiting_) return;
     shut_ = true;
+    bank_.flap_shut(time_shut_s);
     closure_.time_closed_s = time_shut_s;
     closure_.closing_time_s = time_shut_s - time_moved_s;
 }

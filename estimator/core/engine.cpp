@@ -31,6 +31,7 @@ Engine::Engine(const Car& car, const Settings& settings)
       rear_heights_(car, true),
       front_watch_(car, false),
       rear_watch_(car, true),
+      compliance_(car),
       tracker_(settings),
       air_density_kgpm3_(kStandardAirDensity_kgpm3),
       wind_variance_m2ps2_(square(kWindSd_mps)),
@@ -89,7 +90,12 @@ StepResult Engine::step(const Frame& frame) {
 }
 
 void Engine::note_slow_channels(const Frame& frame, std::uint64_t admitted) {
-    if (has(admitted, Channel::accel_y)) accel_y_mps2_ = frame.get(Channel::accel_y);
+    if (has(admitted, Channel::yaw_rate)) yaw_rate_radps_ = frame.get(Channel::yaw_rate);
+    if (has(admitted, Channel::accel_y)) {
+        accel_y_mps2_ = frame.get(Channel::accel_y);
+    } else if (!usable(Channel::accel_y)) {
+        accel_y_mps2_ = usable(Channel::yaw_rate) ? yaw_rate_radps_ * longitudinal_.speed_mps() : 0.0;
+    }
     if (has(admitted, Channel::lap)) {
         if (!have_lap_) lap_first_ = frame.get(Channel::lap);
         have_lap_ = true;

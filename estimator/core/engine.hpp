@@ -7,6 +7,7 @@
 #include <cstdint>
 #include <optional>
 
+#include "estimator/core/axle_compliance.hpp"
 #include "estimator/core/axle_heights.hpp"
 #include "estimator/core/axle_loads.hpp"
 #include "estimator/core/axle_watch.hpp"
@@ -17,6 +18,7 @@
 #include "estimator/core/fixed_queue.hpp"
 #include "estimator/core/flap_motion.hpp"
 #include "estimator/core/intake.hpp"
+#include "estimator/core/learned.hpp"
 #include "estimator/core/long_refusal.hpp"
 #include "estimator/core/longitudinal_filter.hpp"
 #include "estimator/core/pitot_calibration.hpp"
@@ -58,6 +60,9 @@ class Engine {
 
     // The slow states, once a second of source time and not while a closing is judged; false in between.
     [[nodiscard]] bool take_slow_snapshot(SlowSnapshot& out);
+
+    // What has been learned of the car until now.
+    [[nodiscard]] Learned learned() const;
 
     // For those who look closer: tests and benchmarks.
     [[nodiscard]] const ChassisFilter& chassis() const { return chassis_; }
@@ -106,6 +111,7 @@ class Engine {
     AxleLoads front_loads_{Channel::load_fl, Channel::load_fr};
     AxleLoads rear_loads_{Channel::load_rl, Channel::load_rr};
     AxleWatch front_watch_, rear_watch_;
+    ChassisCompliance compliance_;
     RoadTuning front_road_, rear_road_;
     FlapMotion flap_;
     BrakeOnset brakes_;
@@ -123,7 +129,8 @@ class Engine {
     LongRefusal speed_refusal_{0.4, 0.5}, accel_x_refusal_{1.0, 3.0}, accel_z_refusal_{0.4, 20.0};
     LongRefusal drag_refusal_{0.2, 5.0}, pitot_refusal_{0.3, 5.0}, pitot_jump_{0.06, 2.0};
     bool pitot_seen_ = false;
-    double pitot_headwind_mps_ = 0.0;       // mean of late
+    double pitot_headwind_mps_ = 0.0;  // mean of late
+    bool speed_was_lost_ = false;
     bool refused_by_drift_ = false;         // the speed left its prediction bit by bit
     double speed_innovation_before_ = 0.0;  // mean over the last tenth of a second
     double last_speed_s_ = 0.0;             // source time at which a speed was last used
@@ -146,10 +153,11 @@ class Engine {
     double missing_open_ = 0.0;  // base path while no closing is judged
     double next_drift_s_ = 0.0;
     double next_watch_s_ = 0.0, watched_s_ = 0.0;
+    double yaw_rate_radps_ = 0.0;
+    LongRefusal sides_refusal_{0.1, 3.0};
     double accel_y_sum_ = 0.0, accel_y_count_ = 0.0;  // since the watches last judged
     std::uint64_t sources_ = 0;                       // loads and heights that were usable at the last look
     double sources_changed_s_ = -10.0;
-    double sides_broken_s_ = 0.0;
     std::uint64_t told_ = 0;            // distrusted channels that an alarm has told of
     bool heights_known_ = true;         // each axle has at least one height or a load to take it from
     bool command_fell_unseen_ = false;  // a closing was asked for while the flap's position was not to be had

@@ -29,6 +29,15 @@ constexpr double kAreaUnsure_m2 = 0.2;
 }  // namespace
 
 void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_s) {
+    // With the speed unknown the air forces are: nothing is learned, and the motion begins anew afterwards.
+    if ((stale_ & (std::uint64_t{1} << index(Channel::speed))) != 0) {
+        speed_was_lost_ = true;
+        return;
+    }
+    if (speed_was_lost_) {
+        speed_was_lost_ = false;
+        restart_motion(frame.time_s());
+    }
     const double time_s = frame.time_s();
     const auto around = [&](const AxleHeights& heights) {
         return AxleLoads::Surroundings{accel_y_mps2_, longitudinal_.speed_mps(), heights.smooth_dh_m(),

@@ -16,7 +16,7 @@ constexpr double kPitotSettle_s = 0.5;
 constexpr double kPitotOff = 0.09;  // dynamic pressure against the downforce, relative
 constexpr double kPitotJumpFrom_mps = 35.0;
 constexpr double kPitotJump_mps =
-    8.0;  // the air speed leaves the speed over ground by so much at once: not wind
+    5.0;  // the air speed leaves the speed over ground by so much at once: not wind
 constexpr double kPitotMean_s = 0.4;
 
 }  // namespace
@@ -56,6 +56,7 @@ void Engine::watch_sensors(const Frame& frame) {
     const double time_s = frame.time_s();
     front_watch_.see(frame);
     rear_watch_.see(frame);
+    compliance_.see(frame, longitudinal_.speed_mps(), tyre_force_x_n(), intake_.health());
     if (frame.has(Channel::accel_y) && std::isfinite(frame.get(Channel::accel_y))) {
         accel_y_sum_ += frame.get(Channel::accel_y);
         accel_y_count_ += 1.0;
@@ -69,21 +70,18 @@ void Engine::watch_sensors(const Frame& frame) {
     watched_s_ = time_s;
     intake_.expire(frame.time_ns);
     HealthTable& health = intake_.health();
-    const bool lateral = accel_y_count_ > 0.0 && usable(Channel::accel_y);
-    const double accel_y = accel_y_count_ > 0.0 ? accel_y_sum_ / accel_y_count_ : 0.0;
+    const bool lateral_seen = accel_y_count_ > 0.0;
+    const bool lateral = lateral_seen && usable(Channel::accel_y);
+    const double accel_y = lateral_seen ? accel_y_sum_ / accel_y_count_ : 0.0;
     accel_y_sum_ = accel_y_count_ = 0.0;
     // Both axles' sides at once: it is the lateral acceleration that both are compared with.
-    sides_broken_s_ = lateral && front_watch_.sides_broken() && rear_watch_.sides_broken()
-                          ? sides_broken_s_ + elapsed
-                          : 0.0;
-    if (sides_broken_s_ > 0.1) {
-        ChannelHealth& h = health[index(Channel::accel_y)];
-        h.trust = Trust::distrusted;
-        h.fault = Fault::jumped;
-        h.since_ns = frame.time_ns;
-    }
-    front_watch_.judge(elapsed, frame.time_ns, longitudinal_.speed_mps(), accel_y, lateral, health);
-    rear_watch_.judge(elapsed, frame.time_ns, longitudinal_.speed_mps(), accel_y, lateral, health);
+    if (lateral_seen) sides_refusal_.add(front_watch_.sides_broken() && rear_watch_.sides_broken(), elapsed);
+    if (sides_refusal_.wrong()) distrust(Channel::accel_y, Fault::jumped);
+    if (sides_refusal_.right()) trust_again(Channel::accel_y, Fault::jumped);
+    front_watch_.judge(elapsed, frame.time_ns, longitudinal_.speed_mps(), accel_y, lateral_seen, lateral,
+                       health);
+    rear_watch_.judge(elapsed, frame.time_ns, longitudinal_.speed_mps(), accel_y, lateral_seen, lateral,
+                      health);
     watch_pitot(elapsed);
     watch_needed(frame.time_ns);
     tell_distrust(frame.time_ns);

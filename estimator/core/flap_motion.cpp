@@ -7,13 +7,15 @@
 namespace holdfast::core {
 namespace {
 
-constexpr double kOpen = 0.85;        // above: open; a closing counts only from there
-constexpr double kMoved = 0.06;       // below the open level by so much: moving, whatever the sensor's noise
-constexpr double kAtRest = 0.02;      // within so much of an end: at the end
-constexpr double kLeftClosed = 0.08;  // above: opening
-constexpr double kFitFrom = 0.30;     // the fall below this is fitted to find its end
-constexpr double kFitNoise = 0.001;   // scatter below which two fits are equally good
-constexpr double kEasesIn = -0.1;     // log of the fits' scatters, eased over straight
+constexpr double kOpen = 0.85;         // above: open; a closing counts only from there
+constexpr double kMoved = 0.06;        // below the open level by so much: moving, whatever the sensor's noise
+constexpr double kAtRest = 0.02;       // within so much of an end: at the end
+constexpr double kLeftClosed = 0.08;   // above: opening
+constexpr double kFitFrom = 0.30;      // the fall below this is fitted to find its end
+constexpr double kStillFalls = 0.012;  // lower by so much: still moving, whatever the sensor's noise
+constexpr double kStandsFor_s = 0.06;
+constexpr double kFitNoise = 0.001;      // scatter below which two fits are equally good
+constexpr double kEasesIn = -0.1;        // log of the fits' scatters, eased over straight
 constexpr double kActuatorMemory = 0.5;  // weight of the newest closing: an actuator keeps its manner
 constexpr double kEndAhead_s = 0.04;
 
@@ -59,10 +61,12 @@ FlapMotion::Step FlapMotion::position(double time_s, double value) {
         step.closing_began = true;
         command_fell_ = false;
         straight_ = eased_ = LineFit{};
+        lowest_ = value;
+        lowest_time_s_ = time_s;
     };
     switch (phase_) {
         case FlapPhase::closed:
-            if (value > kLeftClosed) phase_ = FlapPhase::opening;
+            if (value > std::max(kLeftClosed, lowest_ + kLeftClosed)) phase_ = FlapPhase::opening;
             command_fell_ = false;
             break;
         case FlapPhase::opening:
@@ -91,7 +95,17 @@ FlapMotion::Step FlapMotion::position(double time_s, double value) {
         case FlapPhase::closing:
             if (value > open_level_ - kAtRest) last_open_time_s_ = time_s;
             track_fall(time_s, value);
-            if (value <= kAtRest) {
+            if (value < lowest_ - kStillFalls) {
+                lowest_ = value;
+                lowest_time_s_ = time_s;
+            }
+            if (value > kAtRest && value < kFitFrom && time_s > lowest_time_s_ + kStandsFor_s) {
+                // It stands, though not at zero: the sensor's zero has moved, and this is shut.
+                phase_ = FlapPhase::closed;
+                step.shut = true;
+                time_moved_s_ = std::max(last_open_time_s_, time_command_s_);
+                time_shut_s_ = lowest_time_s_;
+            } else if (value <= kAtRest) {
                 phase_ = FlapPhase::closed;
                 step.shut = true;
                 time_moved_s_ = std::max(last_open_time_s_, time_command_s_);

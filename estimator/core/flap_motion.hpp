@@ -43,6 +43,8 @@ class FlapMotion {
     double time_moved_s_ = 0.0;
     double time_shut_s_ = 0.0;
     double before_time_s_ = 0.0;
+    double lowest_ = 0.0;         // of the newest closing
+    double lowest_time_s_ = 0.0;  // when it last became lower
     // The last part of the fall: straight where the actuator runs into its stop, as the square of the time
     // left where it eases into it. The better fit finds the end of travel.
     LineFit straight_;

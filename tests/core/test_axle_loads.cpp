@@ -37,7 +37,7 @@ Run run(std::uint64_t seed, std::initializer_list<Channel> lost, bool height_kno
                                      {truth.accel_y_mps2, truth.speed_mps, truth.dh_m, height_known});
         watch.see(frame);
         if (time_s >= next_s) {
-            watch.judge(AxleWatch::kEvery_s, frame.time_ns, truth.speed_mps, truth.accel_y_mps2, true,
+            watch.judge(AxleWatch::kEvery_s, frame.time_ns, truth.speed_mps, truth.accel_y_mps2, true, true,
                         intake.health());
             next_s = time_s + AxleWatch::kEvery_s - 1e-9;
         }

@@ -28,7 +28,7 @@ class Watched {
             if (time_s_ < next_s_) continue;
             next_s_ = time_s_ + AxleWatch::kEvery_s - 1e-9;
             const auto t = axle_.truth(time_s_);
-            watch_.judge(AxleWatch::kEvery_s, frame.time_ns, t.speed_mps, t.accel_y_mps2, true,
+            watch_.judge(AxleWatch::kEvery_s, frame.time_ns, t.speed_mps, t.accel_y_mps2, true, true,
                          intake_.health());
             for (std::size_t i = 0; i < kChannelCount; ++i) {
                 const bool bad = intake_.health()[i].trust == Trust::distrusted;
