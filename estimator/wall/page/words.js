@@ -82,7 +82,7 @@ export const FAULT_WORDS = {
   stuck: 'stands still',
   jumped: 'jumped',
   drifting: 'drifts away',
-  noisy: 'too noisy',
+  noisy: 'is too noisy',
   disagrees: 'disagrees with the others',
 };
 
