@@ -14,8 +14,10 @@ struct Figures {
     std::size_t outings = 0, closings = 0, found = 0, invented = 0, judged = 0;
     double tau_z_rms = 0.0;  // first-order cases: error over stated sd
     double tau_rms_ms = 0.0;
-    double tau_over_bound_rms =
-        0.0;  // error over the bound from the data until a second after the flap is shut
+    // Error over the bound from the data until the brakes, and until a second after the flap is shut. The
+    // second takes the car through its braking as exactly known too: it says more than any car file can.
+    double tau_over_brakes_bound_rms = 0.0;
+    double tau_over_second_bound_rms = 0.0;
     double t95_bias_ms = 0.0, t95_rms_ms = 0.0, t95_inside = 0.0;
     double slow_flagged = 0.0, others_flagged = 0.0;  // shares
     double part_flagged = 0.0;
