@@ -35,7 +35,7 @@ std::vector<Cell> closure_cells(const core::Closure& c, double chord_m) {
         cell("shortfall_sd", c.shortfall_n.sd, judged),
         cell("shortfall_share", c.shortfall_share, judged),
         cell("probability_short", c.probability_short, judged),
-        cell("probability_slow", c.probability_slow, known && c.usual_known),
+        cell("probability_slow", c.probability_slow, known),
         {"slow", known ? (c.slow ? "1" : "0") : ""},
         {"verdict", std::string(verdict_cell(c)), Cell::Kind::word},
     };

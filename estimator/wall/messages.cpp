@@ -229,7 +229,7 @@ std::string closure_object(const core::Closure& c, double chord_m) {
                  {"shortfall", quantity_if(judged, c.shortfall_n)},
                  {"shortfall_share", number_if(judged, c.shortfall_share)},
                  {"probability_short", number_if(judged, c.probability_short)},
-                 {"probability_slow", number_if(known && c.usual_known, c.probability_slow)},
+                 {"probability_slow", number_if(known, c.probability_slow)},
                  {"slow", known && c.slow},
                  {"verdict", verdict.empty() ? Json(nullptr) : Json(verdict)},
                  {"usual_known", c.usual_known}});
