@@ -163,7 +163,7 @@ void Observer::poll() {
 }
 
 void Observer::tell_alarms() {
-    for (AlarmRail::Change& change : rail_.take_changes()) tell(std::move(change));
+    for (const AlarmRail::Change& change : rail_.take_changes()) tell(change);
 }
 
 void Observer::tell(Item item) {
