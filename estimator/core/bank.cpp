@@ -119,22 +119,30 @@ void ReattachmentBank::share_of_all(double time_s, double dt_s) {
 void ReattachmentBank::propagate(const ChassisStep& step) {
     const double dt = step.dt_s;
     const double half = 0.5 * dt * dt;
-    // Slow states' part of the accelerations, the flap's own column left out: its path is the candidate's.
-    Row heave = (missing_ - base_missing_) * step.heave_accel_per_missing_area;
-    Row pitch = (missing_ - base_missing_) * step.pitch_accel_per_missing_area;
+    // Slow states' part of the accelerations, the flap's own column left out: its path is the candidate's. A
+    // few candidates at a time: their sums stay in the nearest cache.
+    for (Eigen::Index first = 0; first < kCount; first += kBlock) {
+        const auto of = [&](ChassisState state) { return deviation_[state].segment<kBlock>(first); };
+        const Block off = missing_.segment<kBlock>(first) - base_missing_;
+        Block heave = off * step.heave_accel_per_missing_area;
+        Block pitch = off * step.pitch_accel_per_missing_area;
+        for (std::size_t p = kMovingCount; p < kFlapAreaRear; ++p) {
+            const auto slow = deviation_[p].segment<kBlock>(first);
+            heave += step.heave_accel_by_state[p] * slow;
+            pitch += step.pitch_accel_by_state[p] * slow;
+        }
+        of(kHeave) += dt * of(kHeaveRate) + half * heave;
+        of(kHeaveRate) += dt * heave;
+        of(kPitch) += dt * of(kPitchRate) + half * pitch;
+        of(kPitchRate) += dt * pitch;
+    }
     const double whole = 1.0 - base_missing_;
     double whole_heave = whole * step.heave_accel_per_missing_area;
     double whole_pitch = whole * step.pitch_accel_per_missing_area;
     for (std::size_t p = kMovingCount; p < kFlapAreaRear; ++p) {
-        heave += step.heave_accel_by_state[p] * deviation_[p];
-        pitch += step.pitch_accel_by_state[p] * deviation_[p];
         whole_heave += step.heave_accel_by_state[p] * whole_deviation_[p];
         whole_pitch += step.pitch_accel_by_state[p] * whole_deviation_[p];
     }
-    deviation_[kHeave] += dt * deviation_[kHeaveRate] + half * heave;
-    deviation_[kHeaveRate] += dt * heave;
-    deviation_[kPitch] += dt * deviation_[kPitchRate] + half * pitch;
-    deviation_[kPitchRate] += dt * pitch;
     whole_deviation_[kHeave] += dt * whole_deviation_[kHeaveRate] + half * whole_heave;
     whole_deviation_[kHeaveRate] += dt * whole_heave;
     whole_deviation_[kPitch] += dt * whole_deviation_[kPitchRate] + half * whole_pitch;
@@ -143,29 +151,29 @@ void ReattachmentBank::propagate(const ChassisStep& step) {
 
 void ReattachmentBank::weigh(const StateVector& h, const StateVector& gain,
                              const Innovation<double>& innovation, double flap_reaction, double direct) {
-    reaction_ = direct * (missing_ - base_missing_);
     double whole_reaction = direct * (1.0 - base_missing_);
-    for (std::size_t i = 0; i < kFlapAreaRear; ++i) {
-        if (h[i] == 0.0) continue;
-        reaction_ += h[i] * deviation_[i];
-        whole_reaction += h[i] * whole_deviation_[i];
-    }
-    for (std::size_t i = 0; i < kFlapAreaRear; ++i) {
-        deviation_[i] -= gain[i] * reaction_;
-        whole_deviation_[i] -= gain[i] * whole_reaction;
-    }
+    for (std::size_t i = 0; i < kFlapAreaRear; ++i) whole_reaction += h[i] * whole_deviation_[i];
+    for (std::size_t i = 0; i < kFlapAreaRear; ++i) whole_deviation_[i] -= gain[i] * whole_reaction;
     // residual r = innovation - D0 reaction; regressors: flap size (reaction + column's), stay (whole -
     // reaction).
     const double weight = 1.0 / innovation.variance;
-    const auto residual = innovation.value - flap_prior_mean_ * reaction_;
-    const auto flap = reaction_ + flap_reaction;
-    const auto stay = whole_reaction - reaction_;
-    residual2_ += weight * residual.square();
-    flap_residual_ += weight * residual * flap;
-    flap2_ += weight * flap.square();
-    stay_residual_ += weight * residual * stay;
-    stay2_ += weight * stay.square();
-    cross_ += weight * flap * stay;
+    for (Eigen::Index first = 0; first < kCount; first += kBlock) {
+        Block reaction = direct * (missing_.segment<kBlock>(first) - base_missing_);
+        for (std::size_t i = 0; i < kFlapAreaRear; ++i) {
+            if (h[i] != 0.0) reaction += h[i] * deviation_[i].segment<kBlock>(first);
+        }
+        for (std::size_t i = 0; i < kFlapAreaRear; ++i)
+            deviation_[i].segment<kBlock>(first) -= gain[i] * reaction;
+        const Block residual = innovation.value - flap_prior_mean_ * reaction;
+        const Block flap = reaction + flap_reaction;
+        const Block stay = whole_reaction - reaction;
+        residual2_.segment<kBlock>(first) += weight * residual.square();
+        flap_residual_.segment<kBlock>(first) += weight * residual * flap;
+        flap2_.segment<kBlock>(first) += weight * flap.square();
+        stay_residual_.segment<kBlock>(first) += weight * residual * stay;
+        stay2_.segment<kBlock>(first) += weight * stay.square();
+        cross_.segment<kBlock>(first) += weight * flap * stay;
+    }
 }
 
 CandidateSums ReattachmentBank::sums(std::size_t candidate) const {

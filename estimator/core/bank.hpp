@@ -115,6 +115,10 @@ class ReattachmentBank {
   private:
     static constexpr Eigen::Index kCount = static_cast<Eigen::Index>(kCandidateCount);
     using Row = Eigen::Array<double, kCount, 1>;
+    // Candidates are taken some at a time, so that what is passed on between their states stays in the
+    // nearest cache.
+    static constexpr Eigen::Index kBlock = static_cast<Eigen::Index>(kTauCount);
+    using Block = Eigen::Array<double, kBlock, 1>;
     using StateVector = ChassisFilter::Filter::Vector;
 
     void forget_difference(ChassisFilter::Filter& filter);
@@ -136,7 +140,6 @@ class ReattachmentBank {
     Row missing_, decay_, tail_decay_, decay_step_, tail_step_;
     std::array<Row, kChassisCount> deviation_;  // one array over the candidates for each state
     StateVector whole_deviation_{};             // the same for a flap that stays wholly detached
-    Row reaction_;
     Row residual2_, flap_residual_, flap2_, stay_residual_, stay2_, cross_;
 };
 

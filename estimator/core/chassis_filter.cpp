@@ -187,7 +187,13 @@ void ChassisFilter::predict(const ChassisInput& in) {
     x[kPitch] += dt * x[kPitchRate] + half * pitch_accel;
     x[kPitchRate] += dt * pitch_accel;
 
-    // Covariance, [bias-partition]: columns of the slow states first, then the moving block anew.
+    // Covariance, [bias-partition]. Each moving state follows states behind it only, so that the transition
+    // is unit upper triangular like U: their product is the new U, and D stays. The noise then comes on top.
+    for (std::size_t j = kHeaveRate; j < kMovingCount; ++j) {
+        auto& column = filter_.column(j);
+        column[kHeave] += dt * column[kHeaveRate];
+        if (j >= kPitchRate) column[kPitch] += dt * column[kPitchRate];
+    }
     for (std::size_t j = kMovingCount; j < kChassisCount; ++j) {
         auto& column = filter_.column(j);
         double heave = 0.0;
@@ -201,28 +207,18 @@ void ChassisFilter::predict(const ChassisInput& in) {
         column[kPitch] += dt * column[kPitchRate] + half * pitch;
         column[kPitchRate] += dt * pitch;
     }
-    constexpr std::size_t kNoise = 4;  // load noise front, rear; road velocity front, rear
-    std::array<std::array<double, kMovingCount + kNoise>, kMovingCount> rows{};
-    for (std::size_t j = 0; j < kMovingCount; ++j) {
-        const auto& column = filter_.column(j);
-        for (std::size_t i = 0; i <= j; ++i) rows[i][j] = column[i];
-    }
-    for (std::size_t j = 0; j < kMovingCount; ++j) {
-        rows[kHeave][j] += dt * rows[kHeaveRate][j];
-        rows[kPitch][j] += dt * rows[kPitchRate][j];
-    }
-    rows[kHeaveRate][kMovingCount + 0] = 1.0 / mass;
-    rows[kHeaveRate][kMovingCount + 1] = 1.0 / mass;
-    rows[kPitchRate][kMovingCount + 0] = -a / inertia;
-    rows[kPitchRate][kMovingCount + 1] = b / inertia;
-    rows[kRoadFront][kMovingCount + 2] = 1.0;
-    rows[kRoadRear][kMovingCount + 3] = 1.0;
-    filter_.triangularize<kMovingCount, kNoise>(
-        rows, {in.load_noise_front_n2s * dt, in.load_noise_rear_n2s * dt, in.road_front_m2ps * dt,
-               in.road_rear_m2ps * dt});
+    filter_.add_rank_one(std::array{0.0, 0.0, 0.0, 0.0, 0.0, 1.0}, in.road_rear_m2ps * dt);
+    filter_.add_rank_one(std::array{0.0, 0.0, 0.0, 0.0, 1.0}, in.road_front_m2ps * dt);
+    filter_.add_rank_one(std::array{0.0, 1.0 / mass, 0.0, -a / inertia}, in.load_noise_front_n2s * dt);
+    filter_.add_rank_one(std::array{0.0, 1.0 / mass, 0.0, b / inertia}, in.load_noise_rear_n2s * dt);
 }
 
 void ChassisFilter::drift(double elapsed_s, bool air_speed_measured, double unseen_turn_radps) {
+    // From the last state to the first: each term's chain of divisions then runs in the shadow of the one
+    // before.
+    if (filter_.diagonal(kFlapAreaRear) > 0.0) {
+        filter_.add_noise(kFlapAreaRear, square(kFlapDrift_m2) * elapsed_s);
+    }
     const double memory_s = air_speed_measured ? kPitotGainMemory_s : kGustMemory_s;
     const double keep = std::exp(-elapsed_s / memory_s);
     const double gust_sd = air_speed_measured ? kPitotGainSd : kGustSd;
@@ -233,19 +229,16 @@ void ChassisFilter::drift(double elapsed_s, bool air_speed_measured, double unse
         const double wind_keep = std::exp(-elapsed_s * unseen_turn_radps / kTurnForgets_rad);
         filter_.x[kWindAlong] *= wind_keep;
         filter_.scale_state(kWindAlong, wind_keep);
-        filter_.add_noise(kWindAlong, square(kWindPriorSd_mps) * (1.0 - wind_keep * wind_keep));
-        filter_.add_noise(kWindAlong, square(kWindDrift_mps) * elapsed_s);
         filter_.add_noise(kWindAcross, square(kWindDrift_mps) * elapsed_s);
+        filter_.add_noise(kWindAlong, square(kWindPriorSd_mps) * (1.0 - wind_keep * wind_keep) +
+                                          square(kWindDrift_mps) * elapsed_s);
     }
-    filter_.add_noise(kAreaFront, square(kAreaDrift_m2) * elapsed_s);
-    filter_.add_noise(kAreaRear, square(kAreaDrift_m2) * elapsed_s);
-    filter_.add_noise(kSlopeFront, square(kSlopeDrift_m) * elapsed_s);
-    filter_.add_noise(kSlopeRear, square(kSlopeDrift_m) * elapsed_s);
-    filter_.add_noise(kLoadOffsetFront, square(kLoadOffsetDrift_n) * elapsed_s);
     filter_.add_noise(kLoadOffsetRear, square(kLoadOffsetDrift_n) * elapsed_s);
-    if (filter_.diagonal(kFlapAreaRear) > 0.0) {
-        filter_.add_noise(kFlapAreaRear, square(kFlapDrift_m2) * elapsed_s);
-    }
+    filter_.add_noise(kLoadOffsetFront, square(kLoadOffsetDrift_n) * elapsed_s);
+    filter_.add_noise(kSlopeRear, square(kSlopeDrift_m) * elapsed_s);
+    filter_.add_noise(kSlopeFront, square(kSlopeDrift_m) * elapsed_s);
+    filter_.add_noise(kAreaRear, square(kAreaDrift_m2) * elapsed_s);
+    filter_.add_noise(kAreaFront, square(kAreaDrift_m2) * elapsed_s);
 }
 
 void ChassisFilter::wind_is_measured() {

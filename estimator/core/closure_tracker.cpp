@@ -19,6 +19,7 @@ constexpr double kPartProbability = 0.5;  // that a part stays, for the record t
 constexpr std::size_t kUsualKnownAfter = 3;
 constexpr double kFlapPicture_s = 0.004;  // spacing of the flap's points in the picture
 constexpr double kNegligibleWeight = 1e-5;
+constexpr double kUnheard = 1e-9;  // all points of less weight together move a probability by 3e-6 at most
 constexpr double kNaN = std::numeric_limits<double>::quiet_NaN();
 
 double normal_cdf(double z) {
@@ -116,16 +117,17 @@ void ClosureTracker::judge_shortfall() {
     const AeroNow& at = at_brake_;
     const double q = at.dynamic_pressure_pa;
     const double rear_attached = std::max(q * at.rear_area_attached_m2, 1.0);
+    const double limit = settings_.short_share_limit * rear_attached;
+    const double limit_sd = settings_.short_share_limit * q * at.rear_area_sd_m2;
     double mean = 0.0, second = 0.0, short_probability = 0.0, rear_mean = 0.0;
     for (std::size_t i = 0; i < posterior_.count; ++i) {
         const PosteriorPoint& p = posterior_.points[i];
+        if (p.weight < kUnheard) continue;
         const double missing = p.share_missing(closure_.time_brake_s);
         const double rear_n = q * at.factor_rear * (p.flap_m2 * missing + p.stay_m2 * (1.0 - missing));
         const double sd = q * at.factor_rear * missing * std::sqrt(p.flap_variance);
-        const double limit = settings_.short_share_limit * rear_attached;
-        const double limit_sd = settings_.short_share_limit * q * at.rear_area_sd_m2;
         short_probability +=
-            p.weight * normal_cdf((rear_n - limit) / std::max(std::hypot(sd, limit_sd), 1.0));
+            p.weight * normal_cdf((rear_n - limit) / std::max(std::sqrt(square(sd) + square(limit_sd)), 1.0));
         rear_mean += p.weight * rear_n;
         const double all =
             rear_n * (1.0 + at.front_per_rear / at.factor_rear);  // front's share of the flap's flow

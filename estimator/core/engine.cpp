@@ -84,7 +84,9 @@ StepResult Engine::step(const Frame& frame) {
     step_flap(frame, admitted);
     step_chassis(frame, admitted, step_s);
     watch_sensors(frame);
-    tracker_.tick(aero_now(time_s), std::max(front_road_.colour(), rear_road_.colour()), chassis_.filter());
+    if (tracker_.waiting())
+        tracker_.tick(aero_now(time_s), std::max(front_road_.colour(), rear_road_.colour()),
+                      chassis_.filter());
     collect();
     return StepResult::done;
 }

@@ -166,11 +166,13 @@ void Intake::learn(Channel c, Learned& l, ChannelHealth& h, std::int64_t time_ns
     }
     // The share above decays while the channel is stuck, so it is compared before the run began to weigh on
     // it.
-    const double lively_before =
-        l.moving_share / std::pow(0.99, static_cast<double>(std::min<std::uint64_t>(l.same_in_a_row, 100)));
+    const auto lively_before = [&] {
+        return l.moving_share /
+               std::pow(0.99, static_cast<double>(std::min<std::uint64_t>(l.same_in_a_row, 100)));
+    };
     const bool stuck = can_stick(c, value) && l.same_in_a_row >= kStuckSamples &&
-                       lively_before > kLivelyShare &&
-                       static_cast<double>(time_ns - l.same_since_ns) * 1e-9 > kStuckAfter_s;
+                       static_cast<double>(time_ns - l.same_since_ns) * 1e-9 > kStuckAfter_s &&
+                       lively_before() > kLivelyShare;
     if (h.trust == Trust::distrusted && h.fault == Fault::gone) {
         h.trust = Trust::good;
         h.fault = Fault::none;

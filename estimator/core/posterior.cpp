@@ -50,26 +50,35 @@ Truncated truncate(double mean, double sd, double least, double most) {
     return t;
 }
 
+// What is believed of a part that stays detached, before the closing: a normal cut to [least, most].
+struct StayPrior {
+    explicit StayPrior(double flap_m2)
+        : mean(kStaysMean * flap_m2),
+          variance(square(kStaysSd * flap_m2)),
+          least(kStaysLeast * flap_m2),
+          most(flap_m2),
+          log_probability(std::log(truncate(mean, std::sqrt(variance), least, most).probability)) {}
+    double mean, variance, least, most, log_probability;
+};
+
 // A part stays: two unknowns.
-Evidence evidence_part(const CandidateSums& s, double flap_variance, double stay_mean, double stay_variance,
-                       double stay_least, double stay_most) {
-    const double residual2 = s.residual2 - 2.0 * stay_mean * s.stay_residual + square(stay_mean) * s.stay2;
-    const double b1 = s.flap_residual - stay_mean * s.cross;
-    const double b2 = s.stay_residual - stay_mean * s.stay2;
+Evidence evidence_part(const CandidateSums& s, double flap_variance, const StayPrior& stay) {
+    const double residual2 = s.residual2 - 2.0 * stay.mean * s.stay_residual + square(stay.mean) * s.stay2;
+    const double b1 = s.flap_residual - stay.mean * s.cross;
+    const double b2 = s.stay_residual - stay.mean * s.stay2;
     const double p11 = 1.0 / flap_variance + s.flap2;
-    const double p22 = 1.0 / stay_variance + s.stay2;
+    const double p22 = 1.0 / stay.variance + s.stay2;
     const double determinant = p11 * p22 - square(s.cross);
     Evidence e;
     e.flap = (p22 * b1 - s.cross * b2) / determinant;
-    e.stay = stay_mean + (p11 * b2 - s.cross * b1) / determinant;
+    e.stay = stay.mean + (p11 * b2 - s.cross * b1) / determinant;
     e.flap_variance = p22 / determinant;
-    e.log = -0.5 * residual2 + 0.5 * (b1 * e.flap + b2 * (e.stay - stay_mean)) -
-            0.5 * std::log(determinant * flap_variance * stay_variance);
+    e.log = -0.5 * residual2 + 0.5 * (b1 * e.flap + b2 * (e.stay - stay.mean)) -
+            0.5 * std::log(determinant * flap_variance * stay.variance);
     // The part that stays lies between a noticeable share and the whole: evidence and mean of the truncated
     // normal.
-    const Truncated after = truncate(e.stay, std::sqrt(p11 / determinant), stay_least, stay_most);
-    const Truncated before = truncate(stay_mean, std::sqrt(stay_variance), stay_least, stay_most);
-    e.log += std::log(after.probability / before.probability);
+    const Truncated after = truncate(e.stay, std::sqrt(p11 / determinant), stay.least, stay.most);
+    e.log += std::log(after.probability) - stay.log_probability;
     e.stay = after.mean;
     return e;
 }
@@ -77,6 +86,12 @@ Evidence evidence_part(const CandidateSums& s, double flap_variance, double stay
 CandidateSums tempered(CandidateSums s, double temper) {
     const double f = 1.0 / temper;
     return {s.residual2 * f, s.flap_residual * f, s.flap2 * f, s.stay_residual * f, s.stay2 * f, s.cross * f};
+}
+
+// Weight against the best candidate's; far below it none, not one that only costs time.
+double relative_weight(double log_ratio) {
+    constexpr double kNone = -40.0;  // 4e-18
+    return log_ratio > kNone ? std::exp(log_ratio) : 0.0;
 }
 
 double mix(double a, double b, double share) {
@@ -89,26 +104,25 @@ void weigh_candidates(const ReattachmentBank& bank, const Usual& usual, double t
                       CandidateWeights& out) {
     const double flap0 = bank.flap_prior_mean();
     const double flap_variance = std::max(bank.flap_prior_variance(), 1e-8);
-    const double stay_mean = kStaysMean * flap0;
-    const double stay_variance = square(kStaysSd * flap0);
+    const StayPrior stay(flap0);
+    const double log_none_stays = std::log(1.0 - kStaysPrior);
+    const double log_some_stays = std::log(kStaysPrior);
+    std::array<double, kTauCount> log_tau_weight;
+    for (std::size_t t = 0; t < kTauCount; ++t) log_tau_weight[t] = std::log(usual.tau_weight(tau_chords(t)));
     double best = kImpossible;
     for (std::size_t shape = 0; shape < kShapeCount; ++shape) {
         for (std::size_t start = 0; start < kStartCount; ++start) {
+            const double log_slice = std::log(usual.shape_weight(shape) * usual.start_weight(start));
             for (std::size_t t = 0; t < kTauCount; ++t) {
                 const std::size_t c = candidate_index(shape, start, t);
                 const CandidateSums s = tempered(bank.sums(c), temper);
                 const Evidence whole = evidence_whole(s, flap_variance);
-                const Evidence part =
-                    evidence_part(s, flap_variance, stay_mean, stay_variance, kStaysLeast * flap0, flap0);
-                const double log_whole = std::log(1.0 - kStaysPrior) + whole.log;
-                const double log_part = std::log(kStaysPrior) + part.log;
-                const double top = std::max(log_whole, log_part);
-                const double part_share =
-                    std::exp(log_part - top) / (std::exp(log_part - top) + std::exp(log_whole - top));
-                const double prior =
-                    usual.shape_weight(shape) * usual.start_weight(start) * usual.tau_weight(tau_chords(t));
-                out.log_weight[c] =
-                    std::log(prior) + top - std::log(log_part > log_whole ? part_share : 1.0 - part_share);
+                const Evidence part = evidence_part(s, flap_variance, stay);
+                const double odds = std::exp(log_some_stays + part.log - log_none_stays - whole.log);
+                const double part_share = std::isinf(odds) ? 1.0 : odds / (1.0 + odds);
+                out.log_weight[c] = log_slice + log_tau_weight[t] +
+                                    (odds > 1.0 ? log_some_stays + part.log + std::log1p(1.0 / odds)
+                                                : log_none_stays + whole.log + std::log1p(odds));
                 out.stays[c] = part_share;
                 out.flap_mean[c] = flap0 + mix(whole.flap, part.flap, part_share);
                 out.flap_variance[c] = mix(whole.flap_variance, part.flap_variance, part_share) +
@@ -120,7 +134,7 @@ void weigh_candidates(const ReattachmentBank& bank, const Usual& usual, double t
     }
     double sum = 0.0;
     for (std::size_t c = 0; c < kCandidateCount; ++c)
-        sum += out.weight[c] = std::exp(out.log_weight[c] - best);
+        sum += out.weight[c] = relative_weight(out.log_weight[c] - best);
     for (std::size_t c = 0; c < kCandidateCount; ++c) out.weight[c] /= sum;
 }
 
@@ -134,13 +148,20 @@ void refine(const ReattachmentBank& bank, const CandidateWeights& weights, Poste
     double best = kImpossible;
     for (const double w : weights.log_weight) best = std::max(best, w);
     double sum = 0.0;
+    std::array<double, kFineTauCount> tau_s;
+    for (std::size_t k = 0; k < kFineTauCount; ++k) {
+        const std::size_t t = k / kFine;
+        const double share = static_cast<double>(k % kFine) / static_cast<double>(kFine);
+        tau_s[k] =
+            bank.tau_s(t) * std::pow(bank.tau_s(std::min(t + 1, kTauCount - 1)) / bank.tau_s(t), share);
+    }
     for (std::size_t shape = 0; shape < kShapeCount; ++shape) {
         for (std::size_t start = 0; start < kStartCount; ++start) {
             const std::size_t first = candidate_index(shape, start, 0);
             const auto log_at = [&](std::size_t t) {
                 return weights.log_weight[first + std::min(t, kTauCount - 1)];
             };
-            for (std::size_t k = 0; k <= (kTauCount - 1) * kFine; ++k) {
+            for (std::size_t k = 0; k < kFineTauCount; ++k) {
                 const std::size_t t = k / kFine;
                 const std::size_t next = std::min(t + 1, kTauCount - 1);
                 const double share = static_cast<double>(k % kFine) / static_cast<double>(kFine);
@@ -154,9 +175,9 @@ void refine(const ReattachmentBank& bank, const CandidateWeights& weights, Poste
                         (p2 - p0 +
                          share * (2.0 * p0 - 5.0 * p1 + 4.0 * p2 - p3 + share * (3.0 * (p1 - p2) + p3 - p0)));
                 PosteriorPoint& point = out.points[out.count++];
-                point.weight = std::exp(std::min(log_weight - best, 50.0));
+                point.weight = relative_weight(std::min(log_weight - best, 50.0));
                 sum += point.weight;
-                point.tau_s = bank.tau_s(t) * std::pow(bank.tau_s(next) / bank.tau_s(t), share);
+                point.tau_s = tau_s[k];
                 point.start_s = bank.start_time_s(start);
                 point.shape = static_cast<Shape>(shape);
                 point.flap_m2 = mix(weights.flap_mean[first + t], weights.flap_mean[first + next], share);

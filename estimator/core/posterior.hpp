@@ -40,7 +40,8 @@ struct PosteriorPoint {
 };
 
 inline constexpr std::size_t kFine = 4;  // points between two time constants of the grid
-inline constexpr std::size_t kPointCount = kShapeCount * kStartCount * ((kTauCount - 1) * kFine + 1);
+inline constexpr std::size_t kFineTauCount = (kTauCount - 1) * kFine + 1;
+inline constexpr std::size_t kPointCount = kShapeCount * kStartCount * kFineTauCount;
 
 struct Posterior {
     std::array<PosteriorPoint, kPointCount> points{};

@@ -7,6 +7,7 @@
 // Turner, WSMR TR 38, 1972 (rank-one change).
 #pragma once
 
+#include <algorithm>
 #include <array>
 #include <cstddef>
 
@@ -67,9 +68,11 @@ class UdFilter {
     // First half of an update with the model  y = h^T x + noise: what innovation variance is to be expected.
     // The projections are kept for apply().
     [[nodiscard]] Real expect(const Vector& h, Real noise_variance) {
+        std::size_t end = N;  // most measurements see the first states only
+        while (end > 0 && h[end - 1] == 0) --end;
         Real alpha = noise_variance;
         for (std::size_t j = 0; j < N; ++j) {
-            f_[j] = project(h, j);
+            f_[j] = project(h, j, end);
             v_[j] = d_[j] * f_[j];
             alpha += v_[j] * f_[j];
         }
@@ -105,14 +108,16 @@ class UdFilter {
     }
     [[nodiscard]] const Vector& gain() const { return gain_; }
 
-    // P += weight a a^T, weight >= 0; a is zero beyond index `last`.
-    void add_rank_one(Vector a, Real weight, std::size_t last = N - 1) {
+    // P += weight a a^T, weight >= 0. a may be as short as its last entry that is not zero; `last` may say so
+    // too.
+    template <std::size_t Count = N>
+    void add_rank_one(std::array<Real, Count> a, Real weight, std::size_t last = Count - 1) {
         for (std::size_t j = last + 1; j-- > 0;) {
             const Real s = a[j];
-            const Real d_new = d_[j] + weight * s * s;
+            const Real d_new = d_[j] + weight * (s * s);
             if (!(d_new > 0)) continue;
             const Real beta = weight * s / d_new;
-            weight *= d_[j] / d_new;
+            weight = weight * d_[j] / d_new;
             d_[j] = d_new;
             Real* column = u_[j].data();
             for (std::size_t i = 0; i < j; ++i) {
@@ -187,10 +192,11 @@ class UdFilter {
         v.fill(1);
         return v;
     }
-    [[nodiscard]] Real project(const Vector& h, std::size_t j) const {
+    // Entry j of U^T h; h is zero from `end` on.
+    [[nodiscard]] Real project(const Vector& h, std::size_t j, std::size_t end = N) const {
         const Real* column = u_[j].data();
         Real f = h[j];
-        for (std::size_t i = 0; i < j; ++i) f += column[i] * h[i];
+        for (std::size_t i = 0; i < std::min(j, end); ++i) f += column[i] * h[i];
         return f;
     }
 
