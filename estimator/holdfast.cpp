@@ -82,6 +82,21 @@ int main(int argc, char** argv) {
         ->required();
     add_log_reading(*convert_words, converting.channels, converting.strict);
 
+    SettleOptions settling;
+    CLI::App* settle_words =
+        command(app, "settle", "Hold the car file against an outing, and propose a corrected one");
+    settle_words->add_option("log", settling.log, "The log")->required();
+    settle_words->add_option("--car", settling.car, "Car file (TOML) to hold against it")->required();
+    settle_words->add_option(
+        "--out", settling.out,
+        "Write the proposed car file here: every line as it was, but for the values that "
+        "file and data disagree about. Without it only the report");
+    add_log_reading(*settle_words, settling.channels, settling.strict);
+    settle_words->footer(
+        "\nExit status: 0 done, 1 failure, 2 wrong use, 3 done on incomplete input: what was read of it is "
+        "told.\n\n" +
+        cautions());
+
     CLI::App* keys_words =
         command(app, "keys", "Show every key of the car file: unit, range, default, meaning");
 
@@ -96,6 +111,7 @@ int main(int argc, char** argv) {
         if (replay_words->parsed()) return replay(replaying);
         if (live_words->parsed()) return live(living);
         if (convert_words->parsed()) return convert(converting);
+        if (settle_words->parsed()) return settle(settling);
         if (keys_words->parsed()) return keys();
     } catch (const std::exception& error) {
         std::cerr << "error: " << error.what() << '\n';

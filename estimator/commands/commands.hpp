@@ -39,9 +39,18 @@ struct ConvertOptions {
     bool strict = false;
 };
 
+struct SettleOptions {
+    std::string log;
+    std::string car;
+    std::string out;       // the proposed car file; empty: only the report
+    std::string channels;  // channel map; empty: none
+    bool strict = false;
+};
+
 [[nodiscard]] int replay(const ReplayOptions& options);
 [[nodiscard]] int live(const LiveOptions& options);
 [[nodiscard]] int convert(const ConvertOptions& options);
+[[nodiscard]] int settle(const SettleOptions& options);
 [[nodiscard]] int keys();
 
 }  // namespace holdfast::commands

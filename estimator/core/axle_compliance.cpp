@@ -23,7 +23,7 @@ constexpr double kLinksSd = 0.30;       // relative
 constexpr double kOffsetSd_m = 0.005;
 // Of one block against the relation. The blocks' errors (road, dampers) keep their sign for about a second,
 // so that this is some twice their size.
-constexpr double kNoise_m = 0.0015;
+constexpr double kNoise_m = 0.0006;
 constexpr double kOffsetDrift_m = 1e-5;  // from block to block: sensors that drift
 
 double series_rate_npm(const Axle& axle) {
@@ -138,10 +138,14 @@ void ChassisCompliance::end_block(const HealthTable& health) {
     const double links_front_n = braking ? -anti_dive_ * transfer_n : 0.0;
     const double links_rear_n = (braking ? anti_lift_ : anti_squat_) * transfer_n;
     const auto load = [&](Channel left, Channel right) { return mean(left).value() + mean(right).value(); };
-    front_.learn({load(Channel::load_fl, Channel::load_fr) - weight_front_n_, -at_front, links_front_n,
-                  speed_.value()});
-    rear_.learn(
-        {load(Channel::load_rl, Channel::load_rr) - weight_rear_n_, -at_rear, links_rear_n, speed_.value()});
+    front_.learn({.over_rest_n = load(Channel::load_fl, Channel::load_fr) - weight_front_n_,
+                  .travel_m = -at_front,
+                  .links_n = links_front_n,
+                  .speed_mps = speed_.value()});
+    rear_.learn({.over_rest_n = load(Channel::load_rl, Channel::load_rr) - weight_rear_n_,
+                 .travel_m = -at_rear,
+                 .links_n = links_rear_n,
+                 .speed_mps = speed_.value()});
 }
 
 }  // namespace holdfast::core

@@ -86,6 +86,7 @@ void Run::finish(bool complete, std::string reason) {
     end_.complete = complete;
     end_.reason = std::move(reason);
     end_.duration_s = seconds(last_ns_ - first_ns_);
+    if (end_.frames > 0) end_.learned = engine_->learned();
     for (Sink* sink : sinks_) sink->on_end(end_);
 }
 

@@ -4,8 +4,10 @@
 #pragma once
 
 #include <cstdint>
+#include <optional>
 #include <string>
 
+#include "estimator/core/learned.hpp"
 #include "estimator/core/regrowth.hpp"
 #include "estimator/core/results.hpp"
 #include "proto/vocabulary/frame.hpp"
@@ -14,12 +16,13 @@ namespace holdfast::outputs {
 
 // What a run has come to when it ends.
 struct RunEnd {
-    bool complete = true;            // false: the input broke off, or was stopped, before its end
-    std::string reason{};            // why it is not complete, in words; empty where it is
-    double duration_s = 0.0;         // source time from the first frame to the last
-    std::uint64_t frames = 0;        // taken by the engine
-    std::uint64_t repeated = 0;      // frames with the time of the one before, left out
-    std::uint64_t out_of_order = 0;  // frames with an earlier time, left out
+    bool complete = true;                    // false: the input broke off, or was stopped, before its end
+    std::string reason{};                    // why it is not complete, in words; empty where it is
+    double duration_s = 0.0;                 // source time from the first frame to the last
+    std::uint64_t frames = 0;                // taken by the engine
+    std::uint64_t repeated = 0;              // frames with the time of the one before, left out
+    std::uint64_t out_of_order = 0;          // frames with an earlier time, left out
+    std::optional<core::Learned> learned{};  // of the car; nothing before the end
 };
 
 // What a sink may ask while one of its calls lasts. Asking changes no result.

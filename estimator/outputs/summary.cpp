@@ -69,6 +69,31 @@ Json alarms(const std::map<core::AlarmKind, std::uint64_t>& counts) {
     return j;
 }
 
+Json quantity(const core::Quantity& q) {
+    return {{"value", finite_or_null(q.value)}, {"sd", finite_or_null(q.sd)}};
+}
+
+Json quantity(const std::optional<core::Quantity>& q) {
+    return q ? quantity(*q) : Json(nullptr);
+}
+
+Json axle(const core::LearnedAxle& a) {
+    return {{"rate", quantity(a.rate_npm)},      {"load_offset", quantity(a.load_offset_n)},
+            {"transfer", quantity(a.transfer)},  {"area", quantity(a.area_m2)},
+            {"area_slope", quantity(a.slope_m)}, {"flap_area", quantity(a.flap_m2)}};
+}
+
+Json learned(const core::Learned& l) {
+    return {{"front", axle(l.front)},
+            {"rear", axle(l.rear)},
+            {"slip_drive", quantity(l.slip_drive)},
+            {"slip_brake", quantity(l.slip_brake)},
+            {"accel_x_offset", quantity(l.accel_offset_mps2)},
+            {"accel_x_gain", quantity(l.accel_gain)},
+            {"drive_force_gain", quantity(l.drive_gain)},
+            {"pitot_scale", quantity(l.pitot_scale)}};
+}
+
 }  // namespace
 
 std::string summary_json(const Outing& outing, const Tally& tally, const RunEnd& end,
@@ -87,6 +112,7 @@ std::string summary_json(const Outing& outing, const Tally& tally, const RunEnd&
     j["air_density"] =
         known ? Json(tally.in_standard_air() ? "standard atmosphere" : "measured") : Json(nullptr);
     j["areas"] = {{"flap_closed", areas(tally.areas.closed())}, {"flap_open", areas(tally.areas.open())}};
+    j["learned"] = end.learned ? learned(*end.learned) : Json(nullptr);
     j["closures"] = closures(tally);
     j["alarms"] = alarms(tally.alarms);
     j["channels"] = channels(tally.health, outing.stream);
