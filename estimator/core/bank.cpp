@@ -149,6 +149,11 @@ void ReattachmentBank::propagate(const ChassisStep& step) {
     whole_deviation_[kPitchRate] += dt * whole_pitch;
 }
 
+void ReattachmentBank::scale(ChassisState state, double factor) {
+    deviation_[state] *= factor;
+    whole_deviation_[state] *= factor;
+}
+
 void ReattachmentBank::weigh(const StateVector& h, const StateVector& gain,
                              const Innovation<double>& innovation, double flap_reaction, double direct) {
     double whole_reaction = direct * (1.0 - base_missing_);

@@ -80,6 +80,9 @@ class ReattachmentBank {
     // After predict: carry the deviations through the same step.
     void propagate(const ChassisStep& step);
 
+    // The filter multiplied a state by a factor: every candidate's deviation goes with it.
+    void scale(ChassisState state, double factor);
+
     // After an update: what the candidates make of the same measurement. `direct` is the measurement's own
     // reaction to 1 m^2 missing, beside that through the states. Not called for a measurement that was
     // refused.

@@ -213,7 +213,9 @@ void ChassisFilter::predict(const ChassisInput& in) {
     filter_.add_rank_one(std::array{0.0, 1.0 / mass, 0.0, b / inertia}, in.load_noise_rear_n2s * dt);
 }
 
-void ChassisFilter::drift(double elapsed_s, bool air_speed_measured, double unseen_turn_radps) {
+ChassisFilter::Kept ChassisFilter::drift(double elapsed_s, bool air_speed_measured,
+                                         double unseen_turn_radps) {
+    Kept kept;
     // From the last state to the first: each term's chain of divisions then runs in the shadow of the one
     // before.
     if (filter_.diagonal(kFlapAreaRear) > 0.0) {
@@ -222,11 +224,13 @@ void ChassisFilter::drift(double elapsed_s, bool air_speed_measured, double unse
     const double memory_s = air_speed_measured ? kPitotGainMemory_s : kGustMemory_s;
     const double keep = std::exp(-elapsed_s / memory_s);
     const double gust_sd = air_speed_measured ? kPitotGainSd : kGustSd;
+    kept.gust = keep;
     filter_.x[kGust] *= keep;
     filter_.scale_state(kGust, keep);
     filter_.add_noise(kGust, square(gust_sd) * (1.0 - keep * keep));
     if (!air_speed_measured) {
         const double wind_keep = std::exp(-elapsed_s * unseen_turn_radps / kTurnForgets_rad);
+        kept.wind_along = wind_keep;
         filter_.x[kWindAlong] *= wind_keep;
         filter_.scale_state(kWindAlong, wind_keep);
         filter_.add_noise(kWindAcross, square(kWindDrift_mps) * elapsed_s);
@@ -239,6 +243,7 @@ void ChassisFilter::drift(double elapsed_s, bool air_speed_measured, double unse
     filter_.add_noise(kSlopeFront, square(kSlopeDrift_m) * elapsed_s);
     filter_.add_noise(kAreaRear, square(kAreaDrift_m2) * elapsed_s);
     filter_.add_noise(kAreaFront, square(kAreaDrift_m2) * elapsed_s);
+    return kept;
 }
 
 void ChassisFilter::wind_is_measured() {

@@ -66,6 +66,8 @@ struct ChassisStep {
     double pitch_accel_per_missing_area = 0.0;
 };
 
+inline constexpr double kDriftEvery_s = 0.02;  // how often drift() is to be called
+
 class ChassisFilter {
   public:
     using Filter = UdFilter<double, kChassisCount>;
@@ -76,7 +78,11 @@ class ChassisFilter {
 
     // Slow change of areas, offsets and wind over elapsed_s. unseen_turn_radps: rate at which the car turns
     // in the wind without the course being known; 0 where it is.
-    void drift(double elapsed_s, bool air_speed_measured, double unseen_turn_radps);
+    struct Kept {  // by what the wind states were multiplied
+        double gust = 1.0;
+        double wind_along = 1.0;
+    };
+    Kept drift(double elapsed_s, bool air_speed_measured, double unseen_turn_radps);
 
     // The air speed is measured after all: the wind states go, the gust state becomes the pitot's gain error.
     void wind_is_measured();

@@ -15,8 +15,7 @@ constexpr double kSettleAfterChange_s =
     1.0;                                // a closing so soon after a load or height came or went is not judged
 constexpr double kGapRestart_s = 0.05;  // a pause that the motion of the car does not survive
 constexpr double kUnseenFor_s = 3.0;    // brakes within so much of a command belong to it
-constexpr double kDriftEvery_s = 0.02;
-constexpr double kWindSd_mps = 2.0;       // wind that areas carry where air speed is not measured
+constexpr double kWindSd_mps = 2.0;     // wind that areas carry where air speed is not measured
 constexpr double kMostAccel_mps2 = 30.0;  // how far off the speed may be after a pause
 constexpr double kSlowFrom_mps = 20.0;
 

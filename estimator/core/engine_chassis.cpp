@@ -12,7 +12,6 @@ namespace holdfast::core {
 namespace {
 
 constexpr double kGapRestart_s = 0.05;  // a pause that the motion of the car does not survive
-constexpr double kDriftEvery_s = 0.02;
 constexpr double kHeightLost_s = 0.06;
 constexpr double kStandInEvery_s = 0.02;
 constexpr double kStandInSd_m = 0.006;  // some 2 mm that keep their sign over several samples
@@ -107,7 +106,12 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
         const double turn_radps = std::abs(accel_y_mps2_) / std::max(longitudinal_.speed_mps(), 10.0);
         wind_variance_m2ps2_ +=
             elapsed / kWindMemory_s * (square(chassis_.headwind_mps()) - wind_variance_m2ps2_);
-        chassis_.drift(elapsed, have_pitot_, have_heading_ ? 0.0 : turn_radps);
+        const ChassisFilter::Kept kept =
+            chassis_.drift(elapsed, have_pitot_, have_heading_ ? 0.0 : turn_radps);
+        if (bank.running()) {
+            bank.scale(kGust, kept.gust);
+            bank.scale(kWindAlong, kept.wind_along);
+        }
         longitudinal_.drift(elapsed, 0.002);
     }
     // Before the heights: what it measures is the balance of the step just predicted.

@@ -15,7 +15,8 @@ constexpr double kPitotLearned_s = 40.0;  // before, the areas are not known wel
 constexpr double kPitotSettle_s = 0.5;
 constexpr double kPitotOff = 0.09;  // dynamic pressure against the downforce, relative
 constexpr double kPitotJumpFrom_mps = 35.0;
-constexpr double kPitotJump_mps = 7.5;  // the air speed leaves the speed over ground by so much at once: not wind
+constexpr double kPitotJump_mps =
+    7.5;  // the air speed leaves the speed over ground by so much at once: not wind
 constexpr double kPitotMean_s = 0.4;
 
 }  // namespace
