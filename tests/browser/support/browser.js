@@ -48,5 +48,5 @@ export async function read(page, selector) {
 
 /** Waits until text stands in a node. @param {import('playwright-core').Page} page @param {string} selector @param {string|RegExp} text */
 export async function stands(page, selector, text) {
-  await page.locator(selector).filter({hasText: text}).first().waitFor({timeout: 10000});
+  await page.locator(selector).filter({hasText: text}).first().waitFor({timeout: 30000});
 }
