@@ -1,17 +1,17 @@
 #!/usr/bin/env bash
-# Installs what is missing, builds Holdfast, and runs every test: first with AddressSanitizer and
-# UndefinedBehaviorSanitizer, then as released. Quiet where nothing is wrong; ends with ctest's own closing lines.
-#   bash tests/run.sh          both passes
-#   bash tests/run.sh --fast   as released only
+# Installs what is missing, builds Holdfast, and runs every test. Quiet where nothing is wrong; ends with ctest's own
+# closing lines.
+#   bash tests/run.sh              as released
+#   bash tests/run.sh --sanitize   with AddressSanitizer and UndefinedBehaviorSanitizer first, then as released
 set -euo pipefail
 cd "$(dirname "${BASH_SOURCE[0]}")/.."
 
-sanitize=yes
+sanitize=no
 case "${1-}" in
     '') ;;
-    --fast) sanitize=no ;;
+    --sanitize) sanitize=yes ;;
     *)
-        echo "usage: bash tests/run.sh [--fast]" >&2
+        echo "usage: bash tests/run.sh [--sanitize]" >&2
         exit 2
         ;;
 esac
