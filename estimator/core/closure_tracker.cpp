@@ -85,9 +85,8 @@ double ClosureTracker::mean_deviation(std::size_t state, const ChassisFilter::Fi
     return mean;
 }
 
-void ClosureTracker::brakes(double time_brake_s, std::int32_t zone, double lap_distance_m, const AeroNow& now,
-                            const ChassisFilter::Filter& filter) {
-    (void)filter;
+void ClosureTracker::brakes(double time_brake_s, std::int32_t zone, double lap_distance_m,
+                            const AeroNow& now) {
     if (!waiting_ || closure_.braked || time_brake_s < closure_.time_command_s) return;
     closure_.braked = true;
     closure_.time_brake_s = time_brake_s;
@@ -151,8 +150,7 @@ void ClosureTracker::judge_shortfall() {
     }
 }
 
-void ClosureTracker::describe_reattachment(const AeroNow& now) {
-    (void)now;
+void ClosureTracker::describe_reattachment() {
     Closure& c = closure_;
     double tau = 0.0, tau2 = 0.0, stays = 0.0, flap = 0.0, flap2 = 0.0, flap_within = 0.0, stay = 0.0,
            log_chords = 0.0, log_chords2 = 0.0, slow = 0.0;
@@ -211,7 +209,7 @@ void ClosureTracker::finish_bank(const AeroNow& now, double colour, ChassisFilte
     bank_.collapse(filter, weights_.weight, weights_.flap_mean, weights_.flap_variance, weights_.stay_mean);
     move_stay_into_area(filter);
     if (!shut_ || !usable_) return;
-    describe_reattachment(now);
+    describe_reattachment();
     closure_.flap_downforce_n = now.dynamic_pressure_pa * now.factor_rear * filter.x[kFlapAreaRear];
     if (closure_.slow) {
         slow_alarm_out_ = Alarm{AlarmKind::slow_reattachment,

@@ -45,8 +45,7 @@ class ClosureTracker {
     // The flap is shut.
     void shut(double time_moved_s, double time_shut_s);
     // The brakes came on. Judges at once where a closing waits for it.
-    void brakes(double time_brake_s, std::int32_t zone, double lap_distance_m, const AeroNow& now,
-                const ChassisFilter::Filter& filter);
+    void brakes(double time_brake_s, std::int32_t zone, double lap_distance_m, const AeroNow& now);
     // Time passes: renews the weights, looks again at a shortfall, ends the window, closes the record.
     void tick(const AeroNow& now, double colour, ChassisFilter::Filter& filter);
     // The data broke off or the flap was opened again: whatever runs ends here.
@@ -73,7 +72,7 @@ class ClosureTracker {
   private:
     void weigh(double colour);
     void finish_bank(const AeroNow& now, double colour, ChassisFilter::Filter& filter);
-    void describe_reattachment(const AeroNow& now);
+    void describe_reattachment();
     void move_stay_into_area(ChassisFilter::Filter& filter);
     void judge_shortfall();
     void publish();

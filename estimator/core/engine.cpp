@@ -165,7 +165,7 @@ void Engine::find_brakes(const Frame& frame, std::uint64_t admitted) {
         alarms_.push(Alarm{AlarmKind::unknown_at_brakes, frame.time_ns, 0, Channel::flap_position, 0.0, {}});
     }
     command_fell_unseen_ = false;
-    tracker_.brakes(*onset, zone, distance, aero_now(time_s), chassis_.filter());
+    tracker_.brakes(*onset, zone, distance, aero_now(time_s));
 }
 
 void Engine::restart_motion(double time_s) {

@@ -77,7 +77,6 @@ class UdFilter {
             alpha += v_[j] * f_[j];
         }
         noise_variance_ = noise_variance;
-        innovation_variance_ = alpha;
         return alpha;
     }
 
@@ -208,7 +207,6 @@ class UdFilter {
     Vector kept_ = ones();
     Vector added_{};
     Real noise_variance_ = 1;
-    Real innovation_variance_ = 1;
 };
 
 }  // namespace holdfast::core
