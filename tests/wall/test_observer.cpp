@@ -167,10 +167,11 @@ TEST_CASE("an alarm is acknowledged from the page, and all hear of it, though th
     Outing outing(temp / "out", wall);
     outing.go();
     testing::Watcher viewer(wall.server->port());
-    const json alarms = json::parse(viewer.until("alarms").back()).at("list");
-    REQUIRE_FALSE(alarms.empty());
-    const auto id = alarms.at(0).at("id").get<std::uint32_t>();
-    CHECK(alarms.at(0).at("acknowledged") == false);
+    // Whether the alarm is among those at the start or comes after them depends on how busy the machine is.
+    const json at_start = json::parse(viewer.until("alarms").back()).at("list");
+    const json alarm = at_start.empty() ? json::parse(viewer.until("alarm").back()) : at_start.at(0);
+    const auto id = alarm.at("id").get<std::uint32_t>();
+    CHECK(alarm.at("acknowledged") == false);
     viewer.send(R"({"do":"acknowledge","id":)" + std::to_string(id) + "}");
     std::vector<wall::RailAlarm> standing = wall.rail.standing();
     while (std::any_of(standing.begin(), standing.end(),
