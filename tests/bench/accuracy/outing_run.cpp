@@ -25,16 +25,6 @@ constexpr double kSettled_s = 30.0;  // areas are judged from here on
 constexpr double kMatch_s = 0.15;    // found and true closing lie this near, or are not the same
 constexpr std::int64_t kEvery_ns = 20'000'000;
 
-session::CarFile workshop_car(const sim::Scenario& scenario) {
-    const testing::TempFolder folder;  // outings run side by side
-    const auto path = folder / "car.toml";
-    std::ofstream(path) << sim::car_file_text(scenario);
-    auto car = session::read_car_file(path.string());
-    if (!car)
-        throw std::runtime_error("car file of " + scenario.name + ": " + to_string(car.errors().front()));
-    return *car;
-}
-
 sim::Scenario scenario_with_faults(const std::string& name, std::uint64_t seed) {
     const std::size_t plus = name.find('+');
     sim::Scenario scenario = sim::make_scenario(name.substr(0, plus), seed);
@@ -78,12 +68,23 @@ double AreaErrors::mean_error_share() const {
     return count > 0.0 ? error_sum / truth_sum : std::nan("");
 }
 
+core::Car workshop_car(const sim::Outing& outing) {
+    const sim::Scenario& scenario = outing.scenario();
+    const testing::TempFolder folder;  // outings run side by side
+    const auto path = folder / "car.toml";
+    std::ofstream(path) << sim::car_file_text(scenario);
+    const auto car_file = session::read_car_file(path.string());
+    if (!car_file)
+        throw std::runtime_error("car file of " + scenario.name + ": " +
+                                 to_string(car_file.errors().front()));
+    const auto bound = session::bind_ride_heights(*car_file, outing.info());
+    if (!bound) throw std::runtime_error(scenario.name + ": " + to_string(bound.errors().front()));
+    return bound->car;
+}
+
 OutingResult run_outing(const std::string& name, std::uint64_t seed) {
     sim::Outing outing(scenario_with_faults(name, seed));
-    const session::CarFile car_file = workshop_car(outing.scenario());
-    auto bound = session::bind_ride_heights(car_file, outing.info());
-    if (!bound) throw std::runtime_error(name + ": " + to_string(bound.errors().front()));
-    auto engine = std::make_unique<core::Engine>(bound->car, core::Settings{});
+    auto engine = std::make_unique<core::Engine>(workshop_car(outing), core::Settings{});
 
     OutingResult result;
     result.scenario = name;

@@ -7,7 +7,9 @@
 #include <string>
 #include <vector>
 
+#include "estimator/core/car.hpp"
 #include "estimator/core/results.hpp"
+#include "firmware_host/car/outing.hpp"
 #include "firmware_host/car/parameters.hpp"
 #include "firmware_host/car/sensors.hpp"
 #include "firmware_host/car/truth.hpp"
@@ -46,6 +48,9 @@ struct OutingResult {
     double wall_s = 0.0;      // spent in the engine
     double duration_s = 0.0;  // of the outing
 };
+
+// The car as its workshop measured it, with the ride heights that the outing has. Throws std::runtime_error.
+[[nodiscard]] core::Car workshop_car(const sim::Outing& outing);
 
 // SCENARIO[+FAULT]...: names as sim::make_scenario() takes them, faults as sim::parse_fault().
 [[nodiscard]] OutingResult run_outing(const std::string& scenario, std::uint64_t seed);
