@@ -6,6 +6,7 @@
 
 #include "tests/dense.hpp"
 #include "tests/random_filter.hpp"
+#include "tests/reference/moving_system.hpp"
 
 namespace {
 
@@ -39,18 +40,10 @@ struct PlainFilter {
     }
 };
 
-// Transition that moves the first M states, noise of Q inputs on them.
 template <std::size_t N, std::size_t M, std::size_t Q>
-struct System {
-    Matrix<N> f = identity<N>();
-    Matrix<M, Q> input{};
-    std::array<double, Q> q{};
-};
-
-template <std::size_t N, std::size_t M, std::size_t Q>
-System<N, M, Q> random_system(std::mt19937_64& random) {
+MovingSystem<N, M, Q> random_system(std::mt19937_64& random) {
     std::normal_distribution<double> normal;
-    System<N, M, Q> s;
+    MovingSystem<N, M, Q> s;
     for (std::size_t i = 0; i < M; ++i) {
         for (std::size_t j = 0; j < N; ++j) s.f[i][j] = 0.3 * normal(random) / std::sqrt(double(N));
         s.f[i][i] += 0.7L;
@@ -58,28 +51,6 @@ System<N, M, Q> random_system(std::mt19937_64& random) {
     }
     for (double& q : s.q) q = 0.05 + std::abs(normal(random));
     return s;
-}
-
-// The time update as ud_filter.hpp asks its callers to write it.
-template <class Real, std::size_t N, std::size_t M, std::size_t Q>
-void predict(UdFilter<Real, N>& filter, const System<N, M, Q>& system) {
-    const auto moved = [&](const auto& column, std::size_t last, std::size_t i) {
-        Real value = 0;
-        for (std::size_t k = 0; k <= last; ++k) value += static_cast<Real>(system.f[i][k]) * column[k];
-        return value;
-    };
-    const auto x = filter.x;
-    for (std::size_t i = 0; i < M; ++i) filter.x[i] = moved(x, N - 1, i);
-    std::array<std::array<Real, M + Q>, M> rows{};
-    for (std::size_t j = 0; j < N; ++j) {
-        const auto column = filter.column(j);
-        for (std::size_t i = 0; i < M; ++i) (j < M ? rows[i][j] : filter.column(j)[i]) = moved(column, j, i);
-    }
-    std::array<Real, Q> q{};
-    for (std::size_t k = 0; k < Q; ++k) q[k] = static_cast<Real>(system.q[k]);
-    for (std::size_t i = 0; i < M; ++i)
-        for (std::size_t k = 0; k < Q; ++k) rows[i][M + k] = static_cast<Real>(system.input[i][k]);
-    filter.template triangularize<M, Q>(rows, q);
 }
 
 struct Worst {
