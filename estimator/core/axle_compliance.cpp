@@ -13,6 +13,7 @@ namespace {
 constexpr double kBlock_s = 0.2;
 constexpr double kMovingFrom_mps = 10.0;   // stiction and pit stops say nothing
 constexpr double kStraight_mps2 = 6.0;     // beyond, the outer wheel's stop and the roll of tyres matter
+constexpr double kBraking_weights = 0.5;   // beyond, the axles lean on their dampers and links for seconds
 constexpr std::uint32_t kKnownFrom = 150;  // blocks: half a minute
 // Loads over rest, in weights of the axle, where the slope may change. The first lies below the load at which
 // cars meet their bump stops.
@@ -117,7 +118,8 @@ bool ChassisCompliance::sound(Channel c, const HealthTable& health) const {
 void ChassisCompliance::end_block(const HealthTable& health) {
     const bool cornering =
         mean(Channel::accel_y).count > 0.0 && std::abs(mean(Channel::accel_y).value()) > kStraight_mps2;
-    if (speed_.value() < kMovingFrom_mps || cornering) return;
+    const bool braking = tyre_force_.value() < -kBraking_weights * (weight_front_n_ + weight_rear_n_);
+    if (speed_.value() < kMovingFrom_mps || cornering || braking) return;
     for (const Channel c : {Channel::load_fl, Channel::load_fr, Channel::load_rl, Channel::load_rr})
         if (!sound(c, health)) return;
     Mean front_height, rear_height, front_x, rear_x;  // of the sensors of each axle
@@ -134,9 +136,8 @@ void ChassisCompliance::end_block(const HealthTable& health) {
     const double at_front = front_height.value() - slope * front_x.value();
     const double at_rear = at_front - slope * wheelbase_m_;
     const double transfer_n = link_per_force_ * tyre_force_.value();  // off the front, positive driving
-    const bool braking = transfer_n < 0.0;
-    const double links_front_n = braking ? -anti_dive_ * transfer_n : 0.0;
-    const double links_rear_n = (braking ? anti_lift_ : anti_squat_) * transfer_n;
+    const double links_front_n = transfer_n < 0.0 ? -anti_dive_ * transfer_n : 0.0;
+    const double links_rear_n = (transfer_n < 0.0 ? anti_lift_ : anti_squat_) * transfer_n;
     const auto load = [&](Channel left, Channel right) { return mean(left).value() + mean(right).value(); };
     front_.learn({.over_rest_n = load(Channel::load_fl, Channel::load_fr) - weight_front_n_,
                   .travel_m = -at_front,

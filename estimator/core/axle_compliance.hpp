@@ -6,7 +6,8 @@
 // g V^2 the tyres' growth. The steps C1 and C2 take what bump stops stiffen, so that C is the springs' and
 // tyres' own. Travel is explained by load, not load by travel: the ride heights carry the road, which a fit
 // the other way round takes for softness. Means over a fifth of a second leave the dampers out, which give
-// back on the way up what they took on the way down.
+// back on the way up what they took on the way down. Hard braking is left out: for as long as it lasts the
+// axles come up or go down, and the dampers' load keeps its sign.
 #pragma once
 
 #include <array>
