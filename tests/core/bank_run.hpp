@@ -54,6 +54,10 @@ class BankRun {
         return separate_.back();
     }
 
+    // From here on measured values are drawn from what the first separate filter expects: its candidate and
+    // flap are the truth, and states, road and noise are what the model says they may be.
+    void measure_the_first() { truth_is_first_ = true; }
+
     // The flap falls from 10 ms to 70 ms; measured values are the base's own plus noise.
     void run(int steps) {
         for (int i = 0; i < steps; ++i) step();
@@ -88,17 +92,21 @@ class BankRun {
             in.missing = m + s.stay_m2 / s.flap_m2 * (1.0 - m);
             s.chassis.predict(in);
         }
-        std::normal_distribution<double> normal;
         measure_accel_z(chassis_.last_step().heave_accel_mps2 + core::AccelZModel::kGravity +
-                        0.5 * normal(random_));
+                        0.5 * normal_(random_));
         for (const auto& model : {core::RideHeightModel{1.9, core::kRoadFront}, {-1.9, core::kRoadRear}})
-            measure_height(model, model.predict(filter().x) + 4e-4 * normal(random_));
+            measure_height(model, model.predict(filter().x) + 4e-4 * normal_(random_));
     }
 
     void measure_accel_z(double measured) {
         constexpr double kVariance = 0.3;
         const core::ChassisStep& at = chassis_.last_step();
         const auto h = core::AccelZModel::J_accel_state(at);
+        if (truth_is_first_) {
+            const core::ChassisStep& true_step = separate_.front().chassis.last_step();
+            measured = core::AccelZModel::predict(true_step) +
+                       drawn(core::AccelZModel::J_accel_state(true_step), kVariance);
+        }
         double reaction = h[core::kFlapAreaRear];
         for (std::size_t i = 0; i < core::kFlapAreaRear; ++i)
             reaction += h[i] * filter().column(core::kFlapAreaRear)[i];
@@ -116,6 +124,8 @@ class BankRun {
     void measure_height(const core::RideHeightModel& model, double measured) {
         constexpr double kVariance = 9e-8;
         const auto h = model.J_height_state();
+        if (truth_is_first_)
+            measured = model.predict(separate_.front().chassis.filter().x) + drawn(h, kVariance);
         double reaction = 0.0;
         for (std::size_t i = 0; i < core::kFlapAreaRear; ++i)
             reaction += h[i] * filter().column(core::kFlapAreaRear)[i];
@@ -127,12 +137,19 @@ class BankRun {
             update(s, h, kVariance, measured - model.predict(s.chassis.filter().x));
     }
 
+    // An innovation of the first separate filter.
+    double drawn(const ChassisVector& h, double noise) {
+        return std::sqrt(separate_.front().chassis.filter().expect(h, noise)) * normal_(random_);
+    }
+
     static void update(SeparateFilter& s, const ChassisVector& h, double noise, double innovation) {
         s.residual2 += innovation * innovation / s.chassis.filter().expect(h, noise);
         s.chassis.filter().apply(innovation);
     }
 
     std::mt19937_64 random_;
+    std::normal_distribution<double> normal_;
+    bool truth_is_first_ = false;
     core::ChassisFilter chassis_;
     std::unique_ptr<core::ReattachmentBank> bank_;
     std::vector<SeparateFilter> separate_;
