@@ -30,12 +30,15 @@ std::vector<outputs::Sink*> chosen(outputs::Folder& folder, outputs::Sink& shown
     return sinks;
 }
 
-wall::Hello hello(const outputs::Outing& outing, const Input& input) {
+wall::Hello hello(const outputs::Outing& outing, const core::Car& car, const Input& input, bool smoothed) {
     return {.car_name = outing.car_name,
             .origin = input.name,
             .live = input.live,
+            .smoothed = smoothed,
             .stream = input.stream,
             .flap_chord_m = outing.flap_chord_m,
+            .mass_kg = car.mass_kg,
+            .fuel_per_lap_kg = car.fuel_per_lap_kg,
             .settings = core::Settings{},
             .cautions = {kCautionSentences.begin(), kCautionSentences.end()},
             .channels = outing.stream};
@@ -55,7 +58,10 @@ Stage::Stage(const session::CarFile& car_file, const session::BoundCar& bound, c
                        .stream = stream}),
       terminal_(std::cout, status_stream(), output_style(), folder_),
       json_lines_(std::cout, folder_),
-      observer_(folder_, hello(folder_.outing(), input), wall),
+      observer_(
+          folder_,
+          hello(folder_.outing(), bound.car, input, options.knowledge == outputs::Knowledge::of_the_outing),
+          wall),
       sinks_(chosen(folder_, options.json ? static_cast<outputs::Sink&>(json_lines_) : terminal_, observer_,
                     also)),
       run_(bound.car, core::Settings{}, options.rate_hz, sinks_, options.knowledge) {}

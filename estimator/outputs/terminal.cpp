@@ -18,6 +18,11 @@ std::string with_sd(const core::Quantity& q, int decimals) {
     return fixed(q.value, decimals) + " ± " + fixed(q.sd, decimals);
 }
 
+// Two figures, and never as a certainty.
+std::string probability(double p) {
+    return p > 0.99 ? "> 0.99" : fixed(p, 2);
+}
+
 std::string milliseconds(double seconds) {
     return fixed(seconds * 1e3, 0);
 }
@@ -94,13 +99,13 @@ std::string alarm_words(const core::Alarm& alarm, const StreamInfo& stream) {
     switch (alarm.kind) {
         case core::AlarmKind::short_at_brakes:
             return closing + "downforce short as the brakes came on, " + with_sd(alarm.shortfall_n, 0) +
-                   " N missing (probability short " + fixed(alarm.probability, 2) + ")";
+                   " N missing (probability short " + probability(alarm.probability) + ")";
         case core::AlarmKind::unknown_at_brakes:
             return closing +
                    "downforce at the brakes unknown, it could not be computed; do not take it for whole";
         case core::AlarmKind::slow_reattachment:
             return closing + "slow reattachment, or not whole (probability slow " +
-                   fixed(alarm.probability, 2) + ")";
+                   probability(alarm.probability) + ")";
         case core::AlarmKind::data_stale:
             return "data stale, everything is unknown until they return: " +
                    channel_name(alarm.channel, stream.ride_height_names);

@@ -11,10 +11,12 @@
 #include <variant>
 #include <vector>
 
+#include "estimator/core/car.hpp"
 #include "estimator/core/regrowth.hpp"
 #include "estimator/core/results.hpp"
 #include "estimator/core/settings.hpp"
 #include "estimator/wall/alarm_rail.hpp"
+#include "estimator/wall/conditions.hpp"
 #include "proto/vocabulary/frame.hpp"
 
 namespace holdfast::wall {
@@ -24,8 +26,11 @@ struct Hello {
     std::string car_name;
     std::string origin;  // file or endpoint
     bool live = false;
+    bool smoothed = false;     // the files and the report use the whole outing; the page never does
     std::uint32_t stream = 1;  // counts the restarts of the node
     double flap_chord_m = 0.0;
+    core::Quantity mass_kg;  // of the car file, at the start of the outing
+    core::Quantity fuel_per_lap_kg;
     core::Settings settings;
     std::vector<std::string> cautions;
     StreamInfo channels;
@@ -90,6 +95,7 @@ struct LinkStatus {
 struct End {
     bool complete = true;
     std::string summary;  // the text of summary.json
+    Conditions conditions{};
 };
 
 using Item =

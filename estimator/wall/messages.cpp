@@ -129,6 +129,20 @@ Json json(const LinkStatus& link) {
             {"restarts", link.restarts}};
 }
 
+Json json(const Range& range) {
+    return range.known() ? Json{number(range.least), number(range.most)} : Json(nullptr);
+}
+
+Json json(const Conditions& c) {
+    const auto headwind = c.headwind_mps();
+    return {{"air_temperature", json(c.air_temperature_k)},
+            {"air_pressure", json(c.air_pressure_pa)},
+            {"relative_humidity", json(c.relative_humidity)},
+            {"air_density", json(c.air_density_kgpm3)},
+            {"headwind", headwind ? quantity_if(true, *headwind) : Json(nullptr)},
+            {"lap", json(c.lap)}};
+}
+
 Json channel_list(const StreamInfo& stream) {
     Json list = Json::array();
     for (std::size_t i = 0; i < kChannelCount; ++i) {
@@ -170,8 +184,11 @@ std::string hello_json(const Hello& hello) {
                  {"car", hello.car_name},
                  {"origin", hello.origin},
                  {"live", hello.live},
+                 {"smoothed", hello.smoothed},
                  {"stream", hello.stream},
                  {"reference", air ? "air" : "ground"},
+                 {"mass", quantity_if(hello.mass_kg.value > 0.0, hello.mass_kg)},
+                 {"fuel_per_lap", quantity_if(hello.mass_kg.value > 0.0, hello.fuel_per_lap_kg)},
                  {"limits",
                   {{"short_share", hello.settings.short_share_limit},
                    {"alarm_probability", hello.settings.alarm_probability},
@@ -307,6 +324,7 @@ std::string end_json(const End& end) {
     Json summary = Json::parse(end.summary, nullptr, false);
     return dump({{"kind", "end"},
                  {"complete", end.complete},
+                 {"conditions", json(end.conditions)},
                  {"summary", summary.is_discarded() ? Json(nullptr) : std::move(summary)}});
 }
 

@@ -85,6 +85,7 @@ void Observer::on_frame(const Frame& frame) {
 
 // Channels come at rates of their own: the newest value stands until the next.
 void Observer::remember(const Frame& frame) {
+    conditions_.take(frame);
     row_.time_ns = frame.time_ns;
     const auto keep = [&](Channel channel, double& place) {
         if (frame.has(channel)) place = frame.get(channel);
@@ -96,6 +97,7 @@ void Observer::remember(const Frame& frame) {
 }
 
 void Observer::tell_row(const core::Estimate& estimate) {
+    conditions_.take(estimate);
     put(estimate, row_);
     row_.value[column("load_front")] = corner_load_n_[0] + corner_load_n_[1];
     row_.value[column("load_rear")] = corner_load_n_[2] + corner_load_n_[3];
@@ -145,7 +147,7 @@ void Observer::on_end(const outputs::RunEnd& end) {
     if (started_) tell_health(row_.time_ns);
     link_.state = LinkStatus::State::ended;
     set_link(link_);
-    tell(std::make_shared<const End>(End{end.complete, folder_.summary()}));
+    tell(std::make_shared<const End>(End{end.complete, folder_.summary(), conditions_}));
     outputs::write_whole(
         folder_.path() / "report.html",
         report_html(outing_.messages({{std::make_shared<const std::string>(history_.json())}})));

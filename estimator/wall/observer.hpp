@@ -11,6 +11,7 @@
 
 #include "estimator/outputs/folder.hpp"
 #include "estimator/outputs/sink.hpp"
+#include "estimator/wall/conditions.hpp"
 #include "estimator/wall/history.hpp"
 #include "estimator/wall/item.hpp"
 #include "estimator/wall/outing_so_far.hpp"
@@ -55,6 +56,7 @@ class Observer : public outputs::Sink {
     outputs::Inquiry* inquiry_ = nullptr;
     OutingSoFar outing_;
     ThinnedHistory history_;
+    Conditions conditions_;
     Row row_;  // the newest values of what the frames say
     std::array<double, 4> corner_load_n_;
     bool started_ = false;

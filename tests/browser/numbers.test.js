@@ -5,9 +5,9 @@ import assert from 'node:assert/strict';
 import {fixed, plusMinus, quantityText, speedText, clock, span, age} from '../../estimator/wall/page/units.js';
 import {Outing} from '../../estimator/wall/page/outing.js';
 import {Series, COLUMN_NAMES} from '../../estimator/wall/page/series.js';
-import {usualBand, usualMargin, timesUsual, quantile} from '../../estimator/wall/page/usual.js';
+import {usualBand, usualMargin, usualOf, usualWords, timesUsual, studentTenth} from '../../estimator/wall/page/usual.js';
 import {ticks, linePath, bandPath} from '../../estimator/wall/page/svg.js';
-import {valueAt} from '../../estimator/wall/page/regrowth_picture.js';
+import {valueAt, reaches, finer, finerValues} from '../../estimator/wall/page/curve.js';
 import {railOrder, burstLed} from '../../estimator/wall/page/alarm_part.js';
 import {threeSentences} from '../../estimator/wall/page/sentences.js';
 import {weightedMean, areasBySpeed} from '../../estimator/wall/page/area_table.js';
@@ -26,18 +26,18 @@ function outingAt(t) {
 }
 
 test('numbers are rounded to two figures of their uncertainty', () => {
-  assert.equal(plusMinus(1703.408, 174.8, 3), '1703 ± 175');
-  assert.equal(plusMinus(0.05386, 0.0177, 3), '0.054 ± 0.018');
-  assert.equal(plusMinus(-0.3704, 0.083, 3), '−0.370 ± 0.083');
+  assert.equal(plusMinus(1703.408, 174.8, 3), '1703\u00a0±\u00a0175');
+  assert.equal(plusMinus(0.05386, 0.0177, 3), '0.054\u00a0±\u00a00.018');
+  assert.equal(plusMinus(-0.3704, 0.083, 3), '−0.370\u00a0±\u00a00.083');
   assert.equal(fixed(-0.0001, 2), '0.00', 'no minus before nothing');
   assert.equal(fixed(1234567, 0), '1\u2009234\u2009567');
 });
 
 test('units: factors are those of their definitions', () => {
-  assert.equal(quantityText([4448.2216152605, 44.482216152605], US, 'force'), '1000 ± 10 lbf');
+  assert.equal(quantityText([4448.2216152605, 44.482216152605], US, 'force'), '1000\u00a0±\u00a010 lbf');
   assert.equal(speedText(44.704, US), '100 mph');
-  assert.equal(quantityText([0.09290304 * 10, 0.0929], US, 'area'), '10.0 ± 1.0 ft²');
-  assert.equal(quantityText([1703, 175], {...SI, force: 'kN'}, 'force'), '1.70 ± 0.18 kN');
+  assert.equal(quantityText([0.09290304 * 10, 0.0929], US, 'area'), '10.0\u00a0±\u00a01.0 ft²');
+  assert.equal(quantityText([1703, 175], {...SI, force: 'kN'}, 'force'), '1.70\u00a0±\u00a00.18 kN');
 });
 
 test('times', () => {
@@ -88,53 +88,77 @@ test('history outgrows its first room', () => {
   assert.equal(Object.keys(series.history.columns).length, COLUMN_NAMES.length);
 });
 
-test('usual: none below three closings, then quantiles of earlier ones that were not slow, of that zone', () => {
-  const outing = outingAt(360);
-  assert.equal(usualBand(outing, 2, 8).count, 2);
-  assert.deepEqual(usualBand(outing, 2, 8).t, []);
-  const band = usualBand(outing, 2, 17); // 2, 5, 8; 11 and 14 were slow
-  assert.equal(band.count, 3);
-  const at = 15;
-  const shares = [2, 5, 8].map((n) => regrowthOf(n).share[at]).sort((a, b) => a - b);
-  assert.ok(Math.abs(band.middle[at] - shares[1]) < 1e-12);
-  assert.ok(Math.abs(band.low[at] - quantile(shares, 0.1)) < 1e-12);
-  assert.ok(band.low[at] <= band.middle[at] && band.middle[at] <= band.high[at]);
-  const margin = usualMargin([2, 5, 8, 11].map(/** @returns {any} */ (n) => closureOf(n)));
-  assert.equal(margin?.middle, [2, 5, 8].map((n) => /** @type {any} */ (closureOf(n)).margin[0]).sort((a, b) => a - b)[1]);
-  assert.equal(usualMargin([2, 5].map(/** @returns {any} */ (n) => closureOf(n))), null);
+test('usual: the zone’s own mean with the spread of all zones, every zone’s where that is not known, else nothing', () => {
+  const of = (/** @type {[number, number][]} */ ...pairs) => pairs.map(([zone, value]) => ({zone, value}));
+  assert.equal(usualOf(of([1, 4], [2, 6]), 1), null);
+  const car = usualOf(of([1, 4], [2, 6], [4, 8]), 1);
+  assert.deepEqual([car?.of, car?.middle, car?.count], ['car', 6, 3]);
+  assert.ok(Math.abs(Number(car?.sd) - 2 / Math.sqrt(3)) < 1e-12);
+  // Within zones: 3 ± 1 twice, 7 ± 2 twice; squares 2 + 8 on two degrees of freedom.
+  const zone = usualOf(of([1, 2], [1, 4], [2, 5], [2, 9]), 2);
+  assert.deepEqual([zone?.of, zone?.middle, zone?.count], ['zone', 7, 2]);
+  assert.ok(Math.abs(Number(zone?.sd) - Math.sqrt(5 / 2)) < 1e-12);
+  assert.ok(Math.abs(Number(zone?.half) - studentTenth(2) * Math.sqrt(5 * 1.5)) < 1e-12);
+  assert.equal(usualOf(of([1, 2], [1, 4], [2, 5], [2, 9]), 3)?.of, 'car', 'a zone that was never seen');
+  // Tables of Student's t, one-sided 0.10 (memory).
+  for (const [freedom, t] of [[2, 1.886], [3, 1.638], [5, 1.476], [10, 1.372], [1e9, 1.2816]]) assert.ok(Math.abs(studentTenth(freedom) - t) < 0.008, `t of ${freedom}`);
 });
 
-test('times usual: the zone’s own closings first, the car’s where those are too few, else nothing', () => {
+test('the usual band is made of the closings before that came back whole and were not slow', () => {
   const outing = outingAt(360);
-  const of = (/** @type {number} */ n) => timesUsual(outing, /** @type {any} */ (outing.closures.get(n)));
+  const chord_time = regrowthOf(17).chord_time;
+  const none = usualBand(outing, 2, 3, chord_time);
+  assert.deepEqual([none.count, none.share.length], [2, 0]);
+  assert.equal(usualWords(none), 'usual not known yet (2 of 3 closings)');
+  assert.equal(usualWords(usualBand(outing, 2, 4, chord_time)), 'usual in all zones (3 earlier)');
+  const band = usualBand(outing, 2, 17, chord_time); // 2, 5, 8; 11 and 14 were slow
+  assert.equal(usualWords(band), 'usual here (3 earlier)');
+  const half = band.share.indexOf(0.5);
+  const chords = [2, 5, 8].map((n) => reaches(regrowthOf(n).t, regrowthOf(n).share, 0.5) / regrowthOf(n).chord_time);
+  assert.ok(Math.abs(band.middle[half] - (chord_time * (chords[0] + chords[1] + chords[2])) / 3) < 1e-9);
+  band.share.forEach((_, i) => assert.ok(band.early[i] < band.middle[i] && band.middle[i] < band.late[i]));
+  const margin = usualMargin(outing, 2, 17);
+  const mean = [2, 5, 8].map((n) => /** @type {any} */ (closureOf(n)).margin[0]).reduce((a, b) => a + b) / 3;
+  assert.ok(Math.abs(Number(margin?.middle) - mean) < 1e-9);
+  assert.equal(margin?.count, band.count, 'Zones and Regrowth call the same closings usual');
+  assert.equal(usualMargin(outing, 2, 4), null, 'other zones’ brakes say nothing of this one’s margin');
+});
+
+test('times usual, in chords', () => {
+  const outing = outingAt(360);
+  const of = (/** @type {number} */ n) => timesUsual(outing, /** @type {any} */ (outing.closures.get(n)), n);
   assert.equal(of(3), null);
-  assert.equal(of(5)?.of, 'car');
+  assert.equal(of(4)?.of, 'car');
   const slow = of(11);
   assert.equal(slow?.of, 'zone');
-  const usual = [2, 5, 8].map((n) => Number(closureOf(n).chords)).sort((a, b) => a - b)[1];
+  const usual = Math.exp([2, 5, 8].reduce((sum, n) => sum + Math.log(Number(closureOf(n).chords)), 0) / 3);
   assert.ok(Math.abs(Number(slow?.factor) - Number(closureOf(11).chords) / usual) < 1e-9);
   assert.ok(Number(slow?.sd) > 0);
   assert.equal(of(14), null, 'a flow that settles short of whole has no such time');
 });
 
-test('quantiles are linear between neighbours', () => {
-  assert.equal(quantile([1, 2, 4], 0.5), 2);
-  assert.equal(quantile([1, 2, 4], 0.75), 3);
-  assert.equal(quantile([7], 0.1), 7);
+test('a curve goes through its points, and between two of them never beyond either', () => {
+  const x = [0, 1, 2, 3, 4];
+  const y = [0, 0, 0.7, 0.95, 1];
+  const [fine, values] = [finer(x, 8), finerValues(x, y, 8)];
+  assert.equal(fine.length, 33);
+  x.forEach((_, i) => assert.ok(Math.abs(values[8 * i] - y[i]) < 1e-12));
+  values.forEach((v, k) => assert.ok(k === 0 || v >= values[k - 1] - 1e-12, 'it only rises'));
+  assert.ok(Math.abs(valueAt(x, y, reaches(x, y, 0.5)) - 0.5) < 1e-6);
+  assert.equal(valueAt(x, y, 3), 0.95);
+  assert.ok(Number.isNaN(valueAt(x, y, 4.5)) && Number.isNaN(reaches(x, y, 2)));
 });
 
-test('ticks, paths and values between points', () => {
+test('ticks and paths', () => {
   assert.deepEqual(ticks(-0.2, 0.5, 8), [-0.2, -0.1, 0, 0.1, 0.2, 0.3, 0.4, 0.5]);
   assert.deepEqual(ticks(0, 10, 3), [0, 5, 10]);
   assert.equal(linePath([0, 1, 2, 3], [0, NaN, 2, 3]), 'M0.0 0.0M2.0 2.0L3.0 3.0');
   assert.equal(bandPath([0], [0], [1]), '');
-  assert.equal(valueAt([0, 1, 2], [0, 10, 30], 1.5), 20);
-  assert.ok(Number.isNaN(valueAt([0, 1], [0, 1], 2)));
 });
 
-test('rail: severity first, then the oldest; the first of a burst knows how many it leads', () => {
+test('rail: severity first, then the newest burst; the first of a burst knows how many it leads', () => {
   const alarms = [alarm(4, {severity: 'low'}), alarm(2, {severity: 'medium', burst: 1}), alarm(3, {severity: 'high'}), alarm(1, {severity: 'high'})];
-  assert.deepEqual(railOrder(/** @type {any} */ (alarms)).map((a) => a.id), [1, 3, 2, 4]);
+  assert.deepEqual(railOrder(/** @type {any} */ (alarms)).map((a) => a.id), [3, 1, 2, 4]);
   assert.equal(burstLed(/** @type {any} */ (alarms[3]), /** @type {any} */ (alarms)), 1);
   assert.equal(burstLed(/** @type {any} */ (alarms[1]), /** @type {any} */ (alarms)), 0);
 });
@@ -142,7 +166,7 @@ test('rail: severity first, then the oldest; the first of a burst knows how many
 test('answers in words, unknown never read as fine', () => {
   const outing = outingAt(360);
   const of = (/** @type {number} */ n) => /** @type {any} */ (closureOf(n));
-  assert.deepEqual(flowAnswer(of(11), SI), {mark: 'short', word: 'Short at the brakes', detail: '1703 ± 175 N missing; 370 ± 83 ms too late'});
+  assert.deepEqual(flowAnswer(of(11), SI), {mark: 'short', word: 'Short at the brakes', detail: '1703\u00a0±\u00a0175 N missing; 370\u00a0±\u00a083 ms too late'});
   assert.equal(flowAnswer({...of(1), verdict: null, t95: null, tau: null}, SI).mark, 'unknown');
   assert.equal(flowAnswer({...of(1), shortfall: null, margin: null, verdict: 'unclear'}, SI).detail, 'missing downforce unknown');
   assert.equal(paceAnswer(outing, of(1)).word, 'Usual not known yet');
@@ -154,8 +178,8 @@ test('answers in words, unknown never read as fine', () => {
 test('three sentences are made from the numbers', () => {
   const sentences = threeSentences(outingAt(360), SI);
   assert.equal(sentences[0], '18 closings in 3 zones: 15 full, 2 short, 1 unclear.');
-  assert.match(sentences[1], /^Closing 11 \(lap 4, zone 2\) was the slowest, 5\.0 ± 0\.\d times that zone’s usual; 3 closings flagged slow in all \(11, 13, 14\)\. 1 closing \(14\) settled short of whole, the lowest at 49 % of the flap’s downforce\.$/);
-  assert.equal(sentences[2], 'The most missing as the brakes came on was 2621 ± 90 N, 21.8 % of the rear downforce: closing 14, lap 5, zone 2, judged short.');
+  assert.match(sentences[1], /^Closing 11 \(lap 4, zone 2\) was the slowest, \d\.\d\s±\s0\.\d times that zone’s usual; 3 closings flagged slow in all \(11, 13, 14\)\. 1 closing \(14\) settled short of whole, the lowest at 49 % of the flap’s downforce\.$/);
+  assert.equal(sentences[2], 'The most missing as the brakes came on was 2621\u00a0±\u00a090 N, 21.8 % of the rear downforce: closing 14, lap 5, zone 2, judged short.');
   assert.deepEqual(threeSentences(new Outing(), SI), ['The flap did not close in this outing.']);
   assert.match(threeSentences(outingAt(60), SI)[1], /^Too few closings/);
 });

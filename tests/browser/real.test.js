@@ -123,8 +123,7 @@ async function closingsAsInFile(page) {
     near(Number(brakes?.[1]), String((Number(row.time_brake) - Number(row.time_closed)) * 1000), `closing ${row.closure}, brakes`);
     // The curve itself passes 95 % where the file says so.
     const crossing = await page.evaluate(crossing95);
-    // Within the straight lines between its points, which are 20 ms apart.
-    assert.ok(Math.abs(crossing - Number(row.t95) * 1000) < 8, `closing ${row.closure}: the curve passes 95 % at ${crossing} ms, ${row.t95} s in the file`);
+    assert.ok(Math.abs(crossing - Number(row.t95) * 1000) < 4, `closing ${row.closure}: the curve passes 95 % at ${crossing} ms, ${row.t95} s in the file`);
     await page.keyboard.press('ArrowLeft');
   }
 }

@@ -39,7 +39,7 @@ async function open(options) {
 
 test('in the order of a reader’s questions, without any network', async () => {
   const {page, errors, asked, context} = await open();
-  assert.deepEqual(await page.locator('h2').allInnerTexts(), ['What was analysed, and how good the data were', 'The answer', 'Zones', 'Closings', 'Areas by flap and speed', 'The outing in traces', 'Sensors at the end', 'Settings and versions', 'Cautions']);
+  assert.deepEqual(await page.locator('h2').allInnerTexts(), ['What was analysed, and how good the data were', 'The answer', 'Zones', 'Closings', 'Alarms', 'Areas by flap and speed', 'The outing in traces', 'Sensors at the end', 'Settings and versions', 'Cautions']);
   assert.deepEqual(asked.filter((url) => !/^(file|blob|data):/.test(url)), []);
   assert.deepEqual(errors, []);
   await picture(page, 'report', true);
@@ -65,8 +65,15 @@ test('numbers are those of the files', async () => {
     assert.ok(table[i].startsWith(words), `${table[i]} begins with ${words}`);
     const t95 = [row.t95, row.t95_low, row.t95_high].map((s) => Math.round(Number(s) * 1000));
     assert.ok(table[i].includes(`${t95[0]} (${t95[1]}–${t95[2]})`), `${table[i]}: ${t95}`);
-    assert.ok(table[i].includes(Number(row.probability_short).toFixed(2)));
+    const p = Number(row.probability_short);
+    assert.ok(table[i].includes(p > 0.99 ? '> 0.99' : p < 0.01 ? '< 0.01' : p.toFixed(2)), table[i]);
   });
+  assert.equal(await page.locator('.closing-cell').count(), rows.length, 'each closing has its small picture');
+  assert.equal(await page.locator('#alarms tbody tr').count(), 2, 'closing 6, short; closings 4 and 6, slow');
+  const facts = await read(page, '.facts');
+  assert.match(facts, /Air \d+\.\d( to \d+\.\d)? °C, \d+( to \d+)? hPa, \d+( to \d+)? % humidity, density 1\.\d{3}/);
+  assert.match(facts, /Mass \d+\.\d ± \d+\.\d kg at the start.* kg of fuel a lap, .* over 2 laps/);
+  assert.match(facts, /Smoothed areas use the whole outing/);
   assert.equal(await page.locator('.zone-report').count(), zones);
   assert.equal(await page.locator('.zone-closing').count(), rows.filter((r) => r.zone !== '0').length);
 

@@ -1,6 +1,6 @@
 // SPDX-License-Identifier: MIT
-// The alarm rail: latched until a person acknowledges; three shelves by severity, the oldest of each on top, so that
-// the first one of a burst is read first. Quiet when nothing is wrong.
+// The alarm rail: latched until a person acknowledges; three shelves by severity, the newest burst of each on top, and
+// of a burst the alarm that came first. Quiet when nothing is wrong.
 import {html} from "./svg.js";
 import {icon} from "./marks.js";
 import {clock} from "./units.js";
@@ -11,7 +11,7 @@ import {chime} from "./sound.js";
 
 /** In the order of the rail. @param {Iterable<Alarm>} alarms @returns {Alarm[]} */
 export function railOrder(alarms) {
-  return [...alarms].sort((a, b) => SEVERITIES[a.severity].rank - SEVERITIES[b.severity].rank || a.id - b.id);
+  return [...alarms].sort((a, b) => SEVERITIES[a.severity].rank - SEVERITIES[b.severity].rank || b.burst - a.burst || a.id - b.id);
 }
 
 /** How many alarms came in the burst that this one leads; 0 where it leads none. @param {Alarm} alarm @param {Alarm[]} all */
@@ -73,6 +73,8 @@ function item(alarm, followers) {
   const state = alarm.acknowledged ? 'acknowledged, still so' : alarm.active ? 'still so' : 'over by itself';
   const again = alarm.times > 1 ? `, came ${alarm.times} times` : '';
   const first = followers > 0 ? `first of ${followers + 1}` : '';
+  // What made the program sure stands beside the state, for a second look.
+  const [, words, sure] = /** @type {RegExpExecArray} */ (/^(.*?)(?: \((probability [^()]*)\))?$/s.exec(alarm.text.replace(/ ([±>]) /g, '\u00a0$1\u00a0')));
   return html(
     'li',
     {class: `alarm alarm-${alarm.severity}${alarm.acknowledged ? ' alarm-answered' : ''}`, 'data-key': key(alarm, followers)},
@@ -81,8 +83,8 @@ function item(alarm, followers) {
       'div',
       {class: 'alarm-words'},
       html('p', {}, html('b', {class: 'alarm-severity'}, word), html('span', {class: 'figure'}, clock(alarm.t)), first ? html('span', {class: 'alarm-first'}, first) : null),
-      html('p', {class: 'alarm-text'}, alarm.text),
-      html('p', {class: 'alarm-state'}, state + again, alarm.closure ? html('button', {type: 'button', class: 'plain', 'data-act': 'closing', 'data-closing': alarm.closure}, `show closing ${alarm.closure}`) : null),
+      html('p', {class: 'alarm-text'}, words),
+      html('p', {class: 'alarm-state'}, [state + again, sure].filter(Boolean).join('; '), alarm.closure ? html('button', {type: 'button', class: 'plain', 'data-act': 'closing', 'data-closing': alarm.closure}, `show closing ${alarm.closure}`) : null),
     ),
     alarm.acknowledged ? null : html('button', {type: 'button', class: 'acknowledge', 'data-act': 'acknowledge', 'data-id': alarm.id, 'aria-label': `Seen: ${alarm.text}`}, 'Seen'),
   );

@@ -3,19 +3,20 @@
 import {html} from "./svg.js";
 import {icon} from "./marks.js";
 import {flowAnswer, paceAnswer, sensorAnswer, percent, closingName} from "./words.js";
-import {valueAt} from "./regrowth_picture.js";
+import {valueAt} from "./curve.js";
 
 /** @typedef {import('./words.js').Answer} Answer */
 
 /** @param {import('./wall.js').Wall} wall @param {HTMLElement} root @returns {import('./wall.js').Part} */
 export function answersPart(wall, root) {
-  const cells = ['Is the flow back?', 'Slower than usual?', 'Anything wrong with the sensors?'].map((question) => {
+  const cells = ['Is the flow back?', 'Slower than usual?', 'Sensors all right?'].map((question) => {
     const mark = html('span', {class: 'answer-mark'});
     const word = html('strong', {class: 'answer-word'});
     const detail = html('span', {class: 'answer-detail'});
-    const title = html('span', {class: 'answer-question'}, question);
+    const of = html('span', {class: 'answer-of'});
+    const title = html('span', {class: 'answer-question'}, html('span', {class: 'question'}, question), of);
     const cell = html('div', {class: 'answer'}, mark, html('p', {}, title, word, detail));
-    return {cell, mark, word, detail, title, question, shown: ''};
+    return {cell, mark, word, detail, of, shown: ''};
   });
   root.append(...cells.map((c) => c.cell));
   // Said aloud once the closing is judged; while it grows only the eye follows.
@@ -32,7 +33,8 @@ export function answersPart(wall, root) {
     c.mark.replaceChildren(icon(answer.mark));
     c.word.textContent = answer.word;
     c.detail.textContent = answer.detail;
-    c.title.textContent = of ? `${c.question} ${of}` : c.question;
+    c.of.textContent = of && ` ${of}`;
+    c.cell.classList.toggle('answer-named', of !== '');
   }
 
   function draw() {

@@ -1,8 +1,8 @@
 // SPDX-License-Identifier: MIT
 // Now: downforce at each axle, drag area, balance; each with its interval and age, or "unknown" and why.
 import {html} from "./svg.js";
-import {plusMinus, unitOf, age} from "./units.js";
-import {remarks} from "./words.js";
+import {plusMinus, unitOf, age, clock} from "./units.js";
+import {remarks, unknownReason} from "./words.js";
 
 /** @typedef {import('./protocol.js').Quantity} Quantity */
 /** @typedef {import('./series.js').Series} Series */
@@ -48,7 +48,7 @@ export function nowPart(wall, root) {
   function show(c, q, factor, unit, most, column) {
     const why = wall.whyUnknown();
     if (why === null && q) {
-      const [value, sd] = plusMinus(q[0] * factor, q[1] * factor, most).split(' ± ');
+      const [value, sd] = plusMinus(q[0] * factor, q[1] * factor, most).split(/\s±\s/);
       c.value.textContent = value;
       c.spread.textContent = `± ${sd} ${unit}`;
       c.when.textContent = `${age(wall.age())} old`;
@@ -56,9 +56,14 @@ export function nowPart(wall, root) {
     }
     c.value.textContent = 'unknown';
     c.spread.textContent = why ?? 'not estimated';
-    const known = wall.outing.series.lastKnown(column);
-    const since = known === null ? null : wall.outing.series.newest - known + wall.age();
-    c.when.textContent = since === null ? '' : `last known ${age(since)} ago`;
+    const {series, now, end} = wall.outing;
+    const known = series.lastKnown(column);
+    if (known === null) c.when.textContent = '';
+    else if (q && unknownReason(now?.flags ?? []) === null) {
+      // Nothing was amiss with the last one but its age.
+      const when = end ? `at ${clock(known)}` : `${age(series.newest - known + wall.age())} ago`;
+      c.when.textContent = `${plusMinus(q[0] * factor, q[1] * factor, most)} ${unit} ${when}`;
+    } else c.when.textContent = `last known ${age(series.newest - known + wall.age())} ago`;
   }
 
   function draw() {

@@ -21,7 +21,7 @@ export class Outing {
   health = [];
   /** @type {Omit<import('./protocol.js').Now, 'samples'>|null} */
   now = null;
-  /** @type {{complete: boolean, summary: Record<string, any>}|null} */
+  /** @type {import('./protocol.js').End|null} */
   end = null;
 
   /** Takes one message in; unknown kinds, which a newer program may send, are left alone. @param {Message} message */
@@ -67,7 +67,7 @@ export class Outing {
         break;
       }
       case 'end':
-        this.end = {complete: message.complete, summary: message.summary};
+        this.end = {complete: message.complete, summary: message.summary, conditions: message.conditions ?? null};
         break;
     }
   }

@@ -11,6 +11,9 @@
  * @property {string} car
  * @property {string} origin log file or endpoint
  * @property {boolean} live
+ * @property {boolean} smoothed the report's areas come from the whole outing, the page's from what was known at the time
+ * @property {Quantity|null} mass of the car file, kg
+ * @property {Quantity|null} fuel_per_lap kg
  * @property {number} stream counts restarts of the on-car node
  * @property {"air"|"ground"} reference speed that the areas refer to
  * @property {{short_share: number, alarm_probability: number, slow_factor: number}} limits
@@ -120,6 +123,18 @@
  * @property {number} [damaged]
  * @property {number} [restarts]
  */
+
+/**
+ * @typedef {object} Conditions ranges [least, most] over the outing; headwind: mean and standard deviation
+ * @property {[number, number]|null} air_temperature K
+ * @property {[number, number]|null} air_pressure Pa
+ * @property {[number, number]|null} relative_humidity
+ * @property {[number, number]|null} air_density
+ * @property {[number, number]|null} headwind m/s
+ * @property {[number, number]|null} lap
+ */
+
+/** @typedef {{complete: boolean, summary: Record<string, any>, conditions: Conditions|null}} End */
 
 /** @typedef {{kind: string} & Record<string, any>} Message */
 

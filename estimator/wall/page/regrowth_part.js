@@ -3,7 +3,7 @@
 import {html} from "./svg.js";
 import {measure} from "./wall.js";
 import {closingName} from "./words.js";
-import {usualBand, LEAST_FOR_USUAL} from "./usual.js";
+import {usualBand, usualWords} from "./usual.js";
 import {regrowthPicture} from "./regrowth_picture.js";
 import {speedText, clock} from "./units.js";
 
@@ -13,13 +13,13 @@ export function regrowthPart(wall, root) {
   const on = html('button', {type: 'button', 'aria-label': 'closing after', 'aria-keyshortcuts': 'ArrowRight'}, '›');
   const follow = html('button', {type: 'button', class: 'follow', 'aria-keyshortcuts': 'l'}, 'newest');
   const name = html('span', {class: 'closing-name'});
-  const usualWords = html('span', {class: 'key key-usual'});
+  const usualKey = html('span', {class: 'key key-usual'});
   const keys = html(
     'p',
     {class: 'keys'},
     html('span', {class: 'key key-own'}, 'this closing, 95 % band'),
     html('span', {class: 'key key-expected'}, 'expected'),
-    usualWords,
+    usualKey,
     html('span', {class: 'key key-brake'}, 'brakes'),
   );
   const canvas = html('div', {class: 'canvas'});
@@ -44,11 +44,9 @@ export function regrowthPart(wall, root) {
       return;
     }
     keys.hidden = false;
-    const usual = usualBand(outing, closure?.zone ?? regrowth.zone, number);
-    usualWords.textContent = usual.t.length
-      ? `usual here (${usual.count} earlier)`
-      : `usual not known yet (${usual.count} of ${LEAST_FOR_USUAL} closings)`;
-    usualWords.classList.toggle('key-none', usual.t.length === 0);
+    const usual = usualBand(outing, closure?.zone ?? regrowth.zone, number, regrowth.chord_time);
+    usualKey.textContent = usualWords(usual);
+    usualKey.classList.toggle('key-none', usual.share.length === 0);
     canvas.replaceChildren(regrowthPicture({regrowth, closure, usual, units: wall.preferences.units, ...measure(canvas)}));
   }
 

@@ -4,17 +4,12 @@
 import {svg, linePath, bandPath, scale, ticks, freshId} from "./svg.js";
 import {fixed, quantityText, span} from "./units.js";
 import {mark} from "./marks.js";
+import {valueAt, finer, finerValues} from "./curve.js";
+
+const PIECES = 5; // of each of the points' 20 ms
 
 /** @typedef {import('./protocol.js').Closure} Closure */
 /** @typedef {import('./protocol.js').Regrowth} Regrowth */
-
-/** Value of a curve at t, linear between its points. @param {number[]} x @param {number[]} y @param {number} t */
-export function valueAt(x, y, t) {
-  const i = x.findIndex((at) => at >= t);
-  if (i < 0) return NaN;
-  if (i === 0) return t < x[0] ? NaN : y[0];
-  return y[i - 1] + ((y[i] - y[i - 1]) * (t - x[i - 1])) / (x[i] - x[i - 1]);
-}
 
 /**
  * @typedef {object} RegrowthView
@@ -69,7 +64,7 @@ export function regrowthPicture(view) {
   );
   root.append(...axes(view, end, x, y, plot, flap));
   const curves = svg('g', {'clip-path': `url(#${clip})`});
-  curves.append(...usualCurves(view, x, y), ...ownCurves(r, x, y), ...flapCurve(r, x, flap));
+  curves.append(...usualCurves(view.usual, em, x, y), ...ownCurves(r, x, y), ...flapCurve(r, x, flap));
   root.append(curves, ...instant95(view, x, y, plot), ...brakes(view, x, y, plot, flap));
   return root;
 }
@@ -79,7 +74,7 @@ function spoken({regrowth, closure, usual, units}) {
   const parts = [`Regrowth of closing ${regrowth.closure}`];
   if (closure && closure.t95 !== null) parts.push(`95 percent back ${span(closure.t95)} after the flap shut`);
   if (closure?.shortfall) parts.push(`${quantityText(closure.shortfall, units, 'force')} missing at the brakes`);
-  parts.push(usual.t.length ? `usual band from ${usual.count} earlier closings` : 'usual not known yet');
+  parts.push(usual.share.length ? `usual band from ${usual.count} earlier closings` : 'usual not known yet');
   return parts.join('; ');
 }
 
@@ -94,7 +89,7 @@ function axes({regrowth: r, em}, to, x, y, plot, flap) {
     nodes.push(svg('line', {class: share === 1 ? 'whole-line' : 'grid', x1: plot.left, x2: plot.right, y1: y(share), y2: y(share)}));
     nodes.push(svg('text', {class: 'tick', x: plot.left - 0.4 * em, y: y(share) + 0.32 * em, 'text-anchor': 'end'}, `${share * 100} %`));
   }
-  for (const t of ticks(from, to, 8)) {
+  for (const t of ticks(from, to, Math.min(8, (plot.right - plot.left) / (4 * em)))) {
     nodes.push(svg('line', {class: 'grid', x1: x(t), x2: x(t), y1: plot.top, y2: flap.bottom}));
     nodes.push(svg('text', {class: 'tick', x: x(t), y: flap.bottom + 1.1 * em, 'text-anchor': 'middle'}, fixed(t * 1000, 0)));
   }
@@ -103,7 +98,7 @@ function axes({regrowth: r, em}, to, x, y, plot, flap) {
   nodes.push(svg('text', {class: 'axis-name', x: plot.right, y: flap.bottom + 2.3 * em, 'text-anchor': 'end'}, since));
   nodes.push(svg('text', {class: 'axis-name', x: 0.2 * em, y: 0.85 * em}, 'flap’s downforce that is back'));
   if (r.chord_time > 0) {
-    for (const n of ticks(0, to / r.chord_time, 7)) {
+    for (const n of ticks(0, to / r.chord_time, Math.min(7, (plot.right - plot.left) / (4 * em)))) {
       const at = x(n * r.chord_time);
       nodes.push(svg('line', {class: 'tick-line', x1: at, x2: at, y1: plot.top - 0.35 * em, y2: plot.top}));
       nodes.push(svg('text', {class: 'tick', x: at, y: plot.top - 0.6 * em, 'text-anchor': 'middle'}, String(n)));
@@ -117,10 +112,11 @@ function axes({regrowth: r, em}, to, x, y, plot, flap) {
   return nodes;
 }
 
-/** @param {RegrowthView} view @param {Scale} x @param {Scale} y */
-function usualCurves({usual, em}, x, y) {
-  if (usual.t.length === 0) return [];
-  const at = usual.t.map(x);
+/** @param {import('./usual.js').UsualBand} usual @param {number} em @param {Scale} x @param {Scale} y */
+export function usualCurves(usual, em, x, y) {
+  if (usual.share.length === 0) return [];
+  const levels = usual.share.map(y);
+  const around = `${linePath(usual.early.map(x), levels)}${linePath([...usual.late].reverse().map(x), [...levels].reverse()).replace('M', 'L')}Z`;
   const hatch = freshId();
   const size = 0.5 * em;
   return [
@@ -133,24 +129,26 @@ function usualCurves({usual, em}, x, y) {
         svg('line', {class: 'usual-hatch', x1: 0, x2: 0, y1: 0, y2: size}),
       ),
     ),
-    svg('path', {class: 'usual-ground', d: bandPath(at, usual.low.map(y), usual.high.map(y))}),
-    svg('path', {class: 'usual-band', fill: `url(#${hatch})`, d: bandPath(at, usual.low.map(y), usual.high.map(y))}),
-    svg('path', {class: 'usual-line', d: linePath(at, usual.middle.map(y))}),
+    svg('path', {class: 'usual-ground', d: around}),
+    svg('path', {class: 'usual-band', fill: `url(#${hatch})`, d: around}),
+    svg('path', {class: 'usual-line', d: linePath(usual.middle.map(x), levels)}),
   ];
 }
 
 /** Solid as far as data reach, dashed where it is expectation. @param {Regrowth} r @param {Scale} x @param {Scale} y */
-function ownCurves(r, x, y) {
-  const reach = r.final ? r.t.length - 1 : r.t.findIndex((t) => t >= r.known_until);
-  const split = reach < 0 ? r.t.length - 1 : reach;
-  const at = r.t.map(x);
+export function ownCurves(r, x, y) {
+  const t = finer(r.t, PIECES);
+  const last = t.length - 1;
+  const reach = r.final ? last : t.findIndex((at) => at >= r.known_until);
+  const split = reach < 0 ? last : reach;
+  const at = t.map(x);
+  const [share, low, high] = [r.share, r.low, r.high].map((values) => finerValues(r.t, values, PIECES).map(y));
   const part = (/** @type {number[]} */ values, /** @type {number} */ from, /** @type {number} */ to) => values.slice(from, to + 1);
-  const band = (/** @type {number} */ from, /** @type {number} */ to) =>
-    bandPath(part(at, from, to), part(r.low.map(y), from, to), part(r.high.map(y), from, to));
-  const line = (/** @type {number} */ from, /** @type {number} */ to) => linePath(part(at, from, to), part(r.share.map(y), from, to));
+  const band = (/** @type {number} */ from, /** @type {number} */ to) => bandPath(part(at, from, to), part(low, from, to), part(high, from, to));
+  const line = (/** @type {number} */ from, /** @type {number} */ to) => linePath(part(at, from, to), part(share, from, to));
   return [
-    svg('path', {class: 'own-band own-expected', d: band(split, r.t.length - 1)}),
-    svg('path', {class: 'own-line own-expected', d: line(split, r.t.length - 1)}),
+    svg('path', {class: 'own-band own-expected', d: band(split, last)}),
+    svg('path', {class: 'own-line own-expected', d: line(split, last)}),
     svg('path', {class: 'own-band', d: band(0, split)}),
     svg('path', {class: 'own-line', d: line(0, split)}),
   ];

@@ -6,7 +6,8 @@ import {UNIT_SETS} from "./units.js";
 import {threeSentences} from "./sentences.js";
 import {dataSection} from "./report_data.js";
 import {zonesSection} from "./report_zones.js";
-import {closuresSection, areasSection, sensorsSection, settingsSection} from "./report_tables.js";
+import {closuresSection} from "./report_closings.js";
+import {alarmsSection, areasSection, sensorsSection, settingsSection} from "./report_tables.js";
 import {tracesSection} from "./report_traces.js";
 
 const UNITS = UNIT_SETS[0];
@@ -19,10 +20,11 @@ const report = /** @type {HTMLElement} */ (document.getElementById('report'));
 document.title = `Holdfast report: ${outing.hello?.car ?? 'no outing'}`;
 report.replaceChildren(
   html('h1', {}, `Flap closings of ${outing.hello?.car ?? 'no outing'}`),
-  dataSection(outing),
+  dataSection(outing, UNITS),
   html('section', {}, html('h2', {}, 'The answer'), html('p', {class: 'answer'}, threeSentences(outing, UNITS).join(' '))),
   zonesSection(outing, UNITS),
   closuresSection(outing, UNITS),
+  alarmsSection(outing),
   areasSection(outing, UNITS),
 );
 report.append(tracesSection(outing, UNITS, report), sensorsSection(outing, UNITS), settingsSection(outing), cautionsSection());

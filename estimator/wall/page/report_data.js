@@ -1,7 +1,7 @@
 // SPDX-License-Identifier: MIT
 // What was analysed and how good the data were: the first thing a reader has to know.
 import {html} from "./svg.js";
-import {clock, fixed} from "./units.js";
+import {clock, fixed, plusMinus, speedText} from "./units.js";
 import {FAULT_WORDS} from "./words.js";
 
 /** @typedef {import('./outing.js').Outing} Outing */
@@ -11,8 +11,8 @@ export function factList(facts) {
   return html('dl', {class: 'facts'}, ...facts.flatMap(([name, value]) => [html('dt', {}, name), html('dd', {}, value)]));
 }
 
-/** @param {Outing} outing */
-export function dataSection(outing) {
+/** @param {Outing} outing @param {import('./units.js').UnitChoice} units */
+export function dataSection(outing, units) {
   const {hello, series, end} = outing;
   const summary = end?.summary;
   /** @type {[string, string][]} */
@@ -20,10 +20,49 @@ export function dataSection(outing) {
   facts.push(['Length', `${clock(summary?.duration ?? series.newest - series.first)} of source time`]);
   if (summary?.frames) facts.push(['Instants', `${fixed(summary.frames.used, 0)} used, ${summary.frames.repeated} repeated, ${summary.frames.out_of_order} out of order`]);
   facts.push(['Areas refer to', hello?.reference === 'air' ? 'speed through the air' : 'speed over ground: the wind is in them']);
-  if (summary) facts.push(['Air density', summary.air_density ?? 'unknown']);
+  if (hello?.smoothed) facts.push(['Smoothed', 'areas use the whole outing; closings, and the wall page, what was known at the moment']);
+  else facts.push(['Not smoothed', 'every value is what was known at its moment']);
+  facts.push(['Air', airWords(end?.conditions ?? null, summary?.air_density)]);
+  facts.push(['Wind', windWords(end?.conditions?.headwind ?? null, units)]);
+  facts.push(['Mass', massWords(outing)]);
+  facts.push(['Tyres', 'compound, pressures and wear are not known to the program; their rates are the car file’s']);
   if (summary?.link) facts.push(['Link', Object.entries(summary.link).map(([name, count]) => `${name.replaceAll('_', ' ')} ${count}`).join(', ')]);
   facts.push(['Channels', channelWords(outing)]);
   return html('section', {}, html('h2', {}, 'What was analysed, and how good the data were'), ...warnings(outing), factList(facts));
+}
+
+/** "24.0" or "23.1 to 24.0". @param {[number, number]} range @param {(value: number) => number} to @param {number} decimals */
+function rangeText(range, to, decimals) {
+  const [from, until] = range.map((value) => fixed(to(value), decimals));
+  return from === until ? from : `${from} to ${until}`;
+}
+
+/** @param {import('./protocol.js').Conditions|null} c @param {string|undefined} source of the density */
+function airWords(c, source) {
+  const parts = [];
+  if (c?.air_temperature) parts.push(`${rangeText(c.air_temperature, (k) => k - 273.15, 1)} °C`);
+  if (c?.air_pressure) parts.push(`${rangeText(c.air_pressure, (pa) => pa / 100, 0)} hPa`);
+  if (c?.relative_humidity) parts.push(`${rangeText(c.relative_humidity, (share) => share * 100, 0)} % humidity`);
+  if (c?.air_density) parts.push(`density ${rangeText(c.air_density, (rho) => rho, 3)} kg/m³`);
+  if (source === 'standard') parts.push('no weather channels: density of the standard atmosphere, 1.225 kg/m³ at sea level');
+  return parts.length ? parts.join(', ') : 'unknown';
+}
+
+/** @param {[number, number]|null} headwind @param {import('./units.js').UnitChoice} units */
+function windWords(headwind, units) {
+  if (!headwind) return 'not known: without a pitot it is in the areas';
+  return `air speed less speed over ground: mean ${speedText(headwind[0], units)}, standard deviation ${speedText(headwind[1], units)}`;
+}
+
+/** @param {Outing} outing */
+function massWords({hello, end}) {
+  if (!hello?.mass) return 'unknown';
+  const start = `${plusMinus(...hello.mass, 1)} kg at the start by the car file`;
+  const fuel = hello.fuel_per_lap;
+  const laps = end?.conditions?.lap;
+  if (!fuel || fuel[0] === 0) return `${start}; no fuel taken off`;
+  const each = `${plusMinus(...fuel, 2)} kg of fuel a lap`;
+  return laps ? `${start}; ${each}, ${fixed(fuel[0] * (laps[1] - laps[0]), 1)} kg over ${fixed(laps[1] - laps[0], 0)} laps` : `${start}; ${each}, but no lap channel: none taken off`;
 }
 
 /** @param {Outing} outing */

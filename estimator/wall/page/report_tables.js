@@ -1,73 +1,35 @@
 // SPDX-License-Identifier: MIT
-// The report's tables: closings, areas, sensors, settings.
+// The report's tables: alarms, areas, sensors, settings.
 import {html} from "./svg.js";
-import {icon, closureMark} from "./marks.js";
+import {icon} from "./marks.js";
 import {clock, fixed, plusMinus, speedText, unitOf} from "./units.js";
+import {SEVERITIES} from "./words.js";
 import {sensorTable, sensorRow, sensorOrder} from "./sensors_part.js";
 import {areasBySpeed} from "./area_table.js";
 import {factList} from "./report_data.js";
 
-/** @typedef {import('./protocol.js').Closure} Closure */
 /** @typedef {import('./protocol.js').Quantity} Quantity */
 /** @typedef {import('./outing.js').Outing} Outing */
 /** @typedef {import('./units.js').UnitChoice} UnitChoice */
 
-/** What may be wider than a phone is scrolled by itself, by keyboard too. @param {string} name */
-function wide(name) {
-  return {class: 'wide', tabindex: 0, role: 'region', 'aria-label': name};
-}
-
 /**
+ * On a phone each row becomes a card, so cells carry their heading; the roles keep the table one for screen readers.
  * @param {string} name @param {string[]} headings @param {(Node|string)[][]} rows
  * @param {number} words columns at the left that are words
  */
-function table(name, headings, rows, words) {
-  const cell = (/** @type {number} */ i) => ({class: i < words ? null : 'number'});
-  return html(
-    'div',
-    wide(name),
-    html('table', {}, html('thead', {}, html('tr', {}, ...headings.map((h, i) => html('th', {scope: 'col', ...cell(i)}, h)))), html('tbody', {}, ...rows.map((row) => html('tr', {}, ...row.map((value, i) => html('td', cell(i), value)))))),
-  );
+export function table(name, headings, rows, words) {
+  const kind = (/** @type {number} */ i) => ({class: i < words ? null : 'number'});
+  const head = html('tr', {role: 'row'}, ...headings.map((h, i) => html('th', {scope: 'col', role: 'columnheader', ...kind(i)}, h)));
+  const body = rows.map((row) => html('tr', {role: 'row'}, ...row.map((value, i) => html('td', {role: 'cell', 'data-name': headings[i], ...kind(i)}, value))));
+  return html('table', {class: 'cards', role: 'table', 'aria-label': name}, html('thead', {role: 'rowgroup'}, head), html('tbody', {role: 'rowgroup'}, ...body));
 }
 
-/** Milliseconds of a quantity. @param {Quantity|null} q */
-function ms(q) {
-  return q === null ? '–' : plusMinus(q[0] * 1000, q[1] * 1000, 0);
-}
-
-/** When 95 % was back, or where the flow settles. @param {Closure} c */
-function backText(c) {
-  if (c.t95 === null) return c.plateau === null ? '–' : `settles at ${fixed(c.plateau * 100, 0)} %`;
-  const interval = c.t95_low === null || c.t95_high === null ? '' : ` (${fixed(c.t95_low * 1000, 0)}–${fixed(c.t95_high * 1000, 0)})`;
-  return fixed(c.t95 * 1000, 0) + interval;
-}
-
-/** @param {Closure} c @param {UnitChoice} units @returns {(Node|string)[]} */
-function closureRow(c, units) {
-  const force = unitOf(units, 'force');
-  const word = `${c.verdict ?? (c.t95 === null ? 'unknown' : 'no braking')}${c.slow ? ', slow' : ''}`;
-  return [
-    html('span', {}, icon(closureMark(c), c.slow), ` ${word}`),
-    String(c.number),
-    String(c.lap),
-    c.zone ? String(c.zone) : '–',
-    clock(c.time_command, 2),
-    speedText(c.speed, units),
-    backText(c),
-    c.chords === null ? '–' : fixed(c.chords, 0),
-    ms(c.margin),
-    c.shortfall === null ? '–' : plusMinus(c.shortfall[0] * force.per_si, c.shortfall[1] * force.per_si, 0),
-    c.probability_short === null ? '–' : fixed(c.probability_short, 2),
-    c.probability_slow === null ? '–' : fixed(c.probability_slow, 2),
-  ];
-}
-
-/** @param {Outing} outing @param {UnitChoice} units */
-export function closuresSection(outing, units) {
-  const headings = ['At the brakes', 'No.', 'Lap', 'Zone', 'Asked for', 'Speed', '95 % back, ms (95 %)', 'Chords', 'Margin, ms', `Missing, ${unitOf(units, 'force').word}`, 'P(short)', 'P(slow)'];
-  const closures = outing.closuresInOrder();
-  const content = closures.length ? table('Closings', headings, closures.map((c) => closureRow(c, units)), 1) : html('p', {}, 'None.');
-  return html('section', {id: 'closings'}, html('h2', {}, 'Closings'), content);
+/** @param {Outing} outing */
+export function alarmsSection(outing) {
+  const alarms = [...outing.alarms.values()].sort((a, b) => a.t - b.t);
+  const state = (/** @type {import('./protocol.js').Alarm} */ a) => `${a.acknowledged ? 'acknowledged' : 'not acknowledged'}${a.times > 1 ? `, came ${a.times} times` : ''}${a.active ? ', still so at the end' : ''}`;
+  const rows = alarms.map((a) => [html('span', {}, icon(a.severity), ` ${SEVERITIES[a.severity].word}`), clock(a.t), a.text, state(a)]);
+  return html('section', {id: 'alarms'}, html('h2', {}, 'Alarms'), rows.length ? table('Alarms', ['To do', 'At', 'What', 'Became'], rows, 4) : html('p', {}, 'None.'));
 }
 
 /** @param {Quantity|null} q @param {UnitChoice} units */
@@ -103,7 +65,7 @@ export function sensorsSection(outing, units) {
   const {table: node, rows} = sensorTable('Health of each channel at the end');
   const names = new Map((outing.hello?.channels ?? []).map((c) => [c.name, c.unit]));
   rows.append(...sensorOrder(outing.health).map((h) => sensorRow(h, names.get(h.name) ?? '', units)));
-  return html('section', {id: 'sensors'}, html('h2', {}, 'Sensors at the end'), html('div', wide('Sensors'), node));
+  return html('section', {id: 'sensors'}, html('h2', {}, 'Sensors at the end'), node);
 }
 
 /** @param {Outing} outing */

@@ -4,13 +4,15 @@ import {html} from "./svg.js";
 import {fixed} from "./units.js";
 import {icon} from "./marks.js";
 import {closingName, flowAnswer} from "./words.js";
-import {usualBand, usualMargin, LEAST_FOR_USUAL} from "./usual.js";
+import {usualBand, usualMargin} from "./usual.js";
 import {zonePicture, zoneRanges} from "./zone_picture.js";
 import {regrowthPicture} from "./regrowth_picture.js";
 
 /** @typedef {import('./protocol.js').Closure} Closure */
 
 const EM = 10;
+const SHEET = {margins: {width: 190, height: 152}, regrowth: {width: 480, height: 152}};
+const PHONE = {margins: {width: 330, height: 150}, regrowth: {width: 330, height: 200}};
 
 /** The closing that most was missing from. @param {Closure[]} closures */
 export function worstOf(closures) {
@@ -36,7 +38,7 @@ function markKey() {
     {class: 'key-marks quiet'},
     ...marks,
     html('span', {}, icon('full', true), ' framed: slow'),
-    html('span', {}, 'whiskers and bands 95 %, ± one standard uncertainty; hatched: usual'),
+    html('span', {}, 'whiskers, bands 95 %; ± one standard uncertainty; hatched, dashed: usual (eight of ten like those not slow)'),
   );
 }
 
@@ -46,16 +48,19 @@ function markKey() {
  */
 function zoneReport(outing, zone, of, ranges, units) {
   const worst = worstOf(of);
-  const usual = usualMargin(of);
-  const sum = usual ? `usual margin ${fixed(usual.middle * 1000, 0)} ms (${fixed(usual.low * 1000, 0)} to ${fixed(usual.high * 1000, 0)})` : `usual not known: fewer than ${LEAST_FOR_USUAL} closings that were not slow`;
-  const margins = zonePicture({zone, closures: of, ranges, chosen: 0, width: 190, height: 210, em: EM});
+  const size = matchMedia('screen and (max-width: 48rem)').matches ? PHONE : SHEET;
+  // All of the outing's closings that were not slow: a report looks back.
+  const usual = usualMargin(outing, zone, Infinity);
+  const sum = usual
+    ? `usual margin ${fixed(usual.middle * 1000, 0)} ms (eight of ten within ${fixed((usual.middle - usual.half) * 1000, 0)} to ${fixed((usual.middle + usual.half) * 1000, 0)})`
+    : 'usual margin not known: too few closings that were not slow';
+  const margins = zonePicture({zone, closures: of, ranges, usual, chosen: 0, ...size.margins, em: EM});
   const pair = html('div', {class: 'zone-pair'}, html('figure', {}, margins, html('figcaption', {}, 'Margin to the brakes, s, by lap')));
   const regrowth = outing.regrowths.get(worst.number);
   if (regrowth) {
     const flow = flowAnswer(worst, units);
-    // All of the zone's closings that were not slow: a report looks back at the whole outing.
-    const band = usualBand(outing, zone, Infinity);
-    const picture = regrowthPicture({regrowth, closure: worst, usual: band, units, width: 480, height: 210, em: EM});
+    const band = usualBand(outing, zone, Infinity, regrowth.chord_time);
+    const picture = regrowthPicture({regrowth, closure: worst, usual: band, units, ...size.regrowth, em: EM});
     pair.append(html('figure', {}, picture, html('figcaption', {}, `Most missing: ${closingName(worst)}; ${flow.word.toLowerCase()}, ${flow.detail}`)));
   }
   return html('div', {class: 'zone-report'}, html('h3', {}, `Zone ${zone}: ${of.length} closing${of.length === 1 ? '' : 's'}, ${sum}`), pair);

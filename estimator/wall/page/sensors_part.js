@@ -17,18 +17,50 @@ export function sensorOrder(health) {
   return [...health].sort((a, b) => rank[a.trust] - rank[b.trust]);
 }
 
+/** Channels that have a unit and decimals of their own. @type {Record<string, (value: number) => string>} */
+const OWN_UNIT = {
+  flap_position: percentOf,
+  flap_command: percentOf,
+  throttle: percentOf,
+  relative_humidity: percentOf,
+  lap: (value) => fixed(value, 0),
+  brake_pressure: (value) => `${fixed(value / 1e5, 1)} bar`,
+  air_pressure: (value) => `${fixed(value / 100, 0)} hPa`,
+};
+
+/** @param {number} value */
+function percentOf(value) {
+  return `${fixed(value * 100, 0)} %`;
+}
+
 /**
  * A value in the viewer's unit, with as many decimals as its unit deserves.
- * @param {number|null} value SI @param {string} unit of the protocol @param {import('./units.js').UnitChoice} choice
+ * @param {string} name of the channel @param {number|null} value SI @param {string} unit of the protocol
+ * @param {import('./units.js').UnitChoice} choice
  */
-export function valueText(value, unit, choice) {
+export function valueText(name, value, unit, choice) {
   if (value === null) return 'unknown';
+  const own = OWN_UNIT[name];
+  if (own) return own(value);
   if (unit === 'N') return `${fixed(value * unitOf(choice, 'force').per_si, choice.force === 'kN' ? 2 : 0)} ${choice.force}`;
   if (unit === 'm/s') return `${fixed(value * unitOf(choice, 'speed').per_si, 1)} ${choice.speed}`;
-  if (unit === 'm' && Math.abs(value) < 1) return `${fixed(value * 1000, 1)} mm`;
-  if (unit === 'Pa') return Math.abs(value) >= 1e5 ? `${fixed(value / 1e5, 2)} bar` : `${fixed(value, 0)} Pa`;
+  if (unit === 'm' && name.startsWith('ride_height')) return `${fixed(value * 1000, 1)} mm`;
+  if (unit === 'm' || unit === 'Pa') return `${fixed(value, 0)} ${unit}`;
   if (unit === 'K') return `${fixed(value - 273.15, 1)} °C`;
-  return `${fixed(value, Math.abs(value) < 100 ? 2 : 0)}${unit && unit !== '-' ? ` ${unit}` : ''}`;
+  if (unit === 'rad') return `${fixed((value * 180) / Math.PI, 1)}°`;
+  return `${fixed(value, 2)}${unit && unit !== '-' ? ` ${unit.replace('^2', '²')}` : ''}`;
+}
+
+// The filter foretells these, and holds them against what comes.
+const FORETOLD = /^(speed|accel_z|ride_height_.*)$/;
+// These move the filter from one instant to the next.
+const INPUTS = /^(load_.*|accel_.*|drive_force|flap_.*|pitot_pressure|heading|yaw_rate|air_.*|relative_humidity)$/;
+
+/** Why a channel has no innovation. @param {string} name @returns {[string, string]} a word, and a sentence for who asks */
+export function uncompared(name) {
+  if (FORETOLD.test(name)) return ['not yet', 'nothing has been foretold for it yet'];
+  if (INPUTS.test(name)) return ['input', 'an input of the filter, so nothing foretells it: it is watched for spikes, standing still and being at odds with other channels'];
+  return ['as it comes', 'marks events and places; it is watched for gaps and for values that cannot be'];
 }
 
 /**
@@ -36,7 +68,10 @@ export function valueText(value, unit, choice) {
  * @param {ChannelHealth} h
  */
 export function gateRule(h) {
-  if (h.test_ratio === null || h.innovation === null) return html('span', {class: 'quiet'}, 'not compared');
+  if (h.test_ratio === null || h.innovation === null) {
+    const [word, why] = uncompared(h.name);
+    return html('span', {class: 'quiet', title: why}, word);
+  }
   const root = svg('svg', {class: 'gate', viewBox: '-60 -8 120 16', role: 'img', 'aria-label': `${fixed(Math.sign(h.innovation) * Math.sqrt(h.test_ratio), 2)} of the gate`});
   root.append(svg('rect', {class: 'gate-inside', x: -40, y: -5, width: 80, height: 10}));
   root.append(svg('path', {class: 'gate-ends', d: 'M-40-7V7M40-7V7M0-5V5'}));
@@ -56,23 +91,26 @@ function storyText(h) {
 
 /** Cells of a channel's row, heading first. @param {ChannelHealth} h @param {string} unit @param {import('./units.js').UnitChoice} choice */
 export function sensorRow(h, unit, choice) {
+  const cell = (/** @type {string} */ kind, /** @type {string} */ name, /** @type {(Node|string)[]} */ ...content) => html('td', {role: 'cell', class: kind, 'data-name': name || null}, ...content);
+  const refused = fixed(h.gated + h.out_of_range + h.not_finite, 0);
   return html(
     'tr',
-    {class: `sensor sensor-${h.trust}`},
-    html('th', {scope: 'row'}, h.name),
-    html('td', {}, icon(h.trust === 'absent' ? 'unknown' : h.trust), storyText(h)),
-    html('td', {}, gateRule(h)),
-    html('td', {class: 'number'}, valueText(h.value, unit, choice)),
-    html('td', {class: 'number'}, h.rate_hz === null ? '–' : fixed(h.rate_hz, h.rate_hz < 10 ? 1 : 0)),
-    html('td', {class: 'number'}, fixed(h.gaps, 0)),
-    html('td', {class: 'number', title: `gate ${h.gated}, out of range ${h.out_of_range}, not finite ${h.not_finite}, repeated ${h.repeats}`}, fixed(h.gated + h.out_of_range + h.not_finite, 0)),
+    {role: 'row', class: `sensor sensor-${h.trust}`},
+    html('th', {role: 'rowheader', scope: 'row'}, h.name),
+    cell('sensor-story', '', icon(h.trust === 'absent' ? 'unknown' : h.trust), storyText(h)),
+    cell('sensor-gate', '', gateRule(h)),
+    cell('number sensor-value', '', valueText(h.name, h.value, unit, choice)),
+    cell('number sensor-count', 'Hz', h.rate_hz === null ? '–' : fixed(h.rate_hz, h.rate_hz < 10 ? 1 : 0)),
+    cell('number sensor-count', 'gaps', fixed(h.gaps, 0)),
+    cell('number sensor-count', 'refused', html('span', {title: `gate ${h.gated}, out of range ${h.out_of_range}, not finite ${h.not_finite}, repeated ${h.repeats}`}, refused)),
   );
 }
 
-/** @param {string} caption */
+/** On a phone each row becomes a card; the roles keep the table one for screen readers. @param {string} caption */
 export function sensorTable(caption) {
-  const rows = html('tbody');
-  const table = html('table', {class: 'sensor-table'}, html('caption', {class: 'aloud'}, caption), html('thead', {}, html('tr', {}, ...HEADINGS.map((h) => html('th', {scope: 'col', class: NUMBERS.includes(h) ? 'number' : null}, h)))), rows);
+  const rows = html('tbody', {role: 'rowgroup'});
+  const head = html('tr', {role: 'row'}, ...HEADINGS.map((h) => html('th', {role: 'columnheader', scope: 'col', class: NUMBERS.includes(h) ? 'number' : null}, h)));
+  const table = html('table', {class: 'sensor-table', role: 'table'}, html('caption', {class: 'aloud'}, caption), html('thead', {role: 'rowgroup'}, head), rows);
   return {table, rows};
 }
 

@@ -34,7 +34,7 @@ function pace(outing, closures) {
   const settled = part.length
     ? ` ${counted(part.length, 'closing')} (${part.map((c) => c.number).join(', ')}) settled short of whole, the lowest at ${fixed(100 * Math.min(...part.map((c) => c.plateau ?? 1)), 0)} % of the flap’s downforce.`
     : '';
-  const timed = slow.filter((c) => c.whole).map((c) => ({c, times: timesUsual(outing, c)}));
+  const timed = slow.filter((c) => c.whole).map((c) => ({c, times: timesUsual(outing, c, Infinity)}));
   const worst = timed.filter((x) => x.times !== null).sort((a, b) => (b.times?.factor ?? 0) - (a.times?.factor ?? 0))[0];
   if (worst?.times) {
     const {c, times} = worst;

@@ -19,8 +19,9 @@ export function tracesPart(wall, root) {
   const live = html('button', {type: 'button', 'aria-keyshortcuts': 'Home'}, 'last minute');
   const whole = html('button', {type: 'button'}, 'whole outing');
   const words = html('span', {class: 'figure trace-window'});
+  const moment = html('p', {class: 'quiet trace-moment'}, 'As known at each moment. The report and estimates.csv of this replay are smoothed: their areas use the whole outing.');
   const stack = html('div', {class: 'trace-stack'});
-  root.append(html('div', {class: 'bar'}, live, whole, slider, words), stack);
+  root.append(html('div', {class: 'bar'}, live, whole, slider, words), moment, stack);
 
   /** @type {{from: number, to: number}|null} null follows the newest minute */
   let held = null;
@@ -115,7 +116,7 @@ export function tracesPart(wall, root) {
     };
     values = [];
     // Lines of text that the titles and the time axis take; the plots share the rest, areas half as much again.
-    const share = fill ? Math.max(4 * em, (room - 13 * em) / (PLOTS.length + 0.5)) : 6.2 * em;
+    const share = fill ? Math.max(4 * em, (room - (moment.hidden ? 13 : 16) * em) / (PLOTS.length + 0.5)) : 6.2 * em;
     plots = PLOTS.map((plan, i) => {
       const title = plotTitle(plan, wall.preferences.units);
       values.push(title.values);
@@ -133,6 +134,7 @@ export function tracesPart(wall, root) {
     const [from, to] = span();
     shown = wall.outing.series.window(from, to, PLOT_COLUMNS, MOST_POINTS);
     PLOTS.forEach((plan, i) => plots[i].setData(/** @type {any} */ (plotData(plan, shown, wall.preferences.units))));
+    moment.hidden = !wall.outing.hello?.smoothed;
     live.setAttribute('aria-pressed', String(held === null));
     slider.min = String(Math.min(first() + (to - from), newest()) || 0);
     slider.max = String(newest() || 0);

@@ -54,7 +54,7 @@ export function decimalsFor(sd, most) {
 /** "1703 ± 175", both with the decimals that the uncertainty deserves. @param {number} value @param {number} sd @param {number} most */
 export function plusMinus(value, sd, most) {
   const decimals = decimalsFor(sd, most);
-  return `${fixed(value, decimals)} ± ${fixed(sd, decimals)}`;
+  return `${fixed(value, decimals)}\u00a0±\u00a0${fixed(sd, decimals)}`;
 }
 
 /** @param {import('./protocol.js').Quantity} q @param {UnitChoice} choice @param {"speed"|"force"|"area"} kind */
@@ -79,6 +79,16 @@ export function clock(t, decimals = 1) {
   const seconds = (rounded - minutes * 60).toFixed(decimals).padStart(decimals ? 3 + decimals : 2, '0');
   if (minutes < 60) return `${sign}${minutes}:${seconds}`;
   return `${sign}${Math.floor(minutes / 60)}:${String(minutes % 60).padStart(2, '0')}:${seconds}`;
+}
+
+/** A probability to two figures, and never as a certainty. @param {number} p */
+export function probabilityText(p) {
+  return p > 0.99 ? '> 0.99' : p < 0.01 ? '< 0.01' : fixed(p, 2);
+}
+
+/** Of milliseconds, without a dash that a minus would run into. @param {number} from s @param {number} to s */
+export function msRange(from, to) {
+  return `${fixed(from * 1000, 0)}${from < 0 || to < 0 ? ' to ' : '–'}${fixed(to * 1000, 0)}`;
 }
 
 /** A short span: milliseconds below a second, else seconds. @param {number} s */

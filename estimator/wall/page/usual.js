@@ -1,108 +1,148 @@
 // SPDX-License-Identifier: MIT
-// What is usual for this car in one braking zone, out of its earlier closings that were not slow.
+// What is usual for this car, out of its earlier closings that were not slow. One rule for all that is shown of it: the
+// mean of the zone's own, with the spread within the zones pooled over all of them; where that is not known yet, mean
+// and spread over every zone. A band of what is usual holds eight of ten closings to come (Student's t), so that it is
+// wide while they are few.
+import {reaches} from "./curve.js";
 
 /** @typedef {import('./protocol.js').Closure} Closure */
 /** @typedef {import('./outing.js').Outing} Outing */
 
 /** Fewer closings than this make no usual. */
 export const LEAST_FOR_USUAL = 3;
+const LEAST_FREEDOM = 2; // one pair tells hardly anything of a spread
+const SHARES = [0.02, 0.05, 0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9, 0.95, 0.98];
 
-/** Quantile of sorted values, linear between neighbours. @param {number[]} sorted @param {number} q */
-export function quantile(sorted, q) {
-  const at = (sorted.length - 1) * q;
-  const below = Math.floor(at);
-  const above = Math.min(below + 1, sorted.length - 1);
-  return sorted[below] + (sorted[above] - sorted[below]) * (at - below);
-}
-
-/** @param {number[]} values */
-function ascending(values) {
-  return [...values].sort((a, b) => a - b);
+/** Student's t that one of ten exceeds (Abramowitz and Stegun 26.7.5; memory). @param {number} freedom */
+export function studentTenth(freedom) {
+  const z = 1.2815516;
+  const terms = [(z ** 3 + z) / 4, (5 * z ** 5 + 16 * z ** 3 + 3 * z) / 96, (3 * z ** 7 + 19 * z ** 5 + 17 * z ** 3 - 15 * z) / 384];
+  return terms.reduce((sum, term, k) => sum + term / freedom ** (k + 1), z);
 }
 
 /**
- * Earlier closings of the zone that were not slow; all zones where `zone` is null.
- * @param {Outing} outing @param {number|null} zone @param {number} before number of the closing that is looked at
+ * @typedef {object} Usual
+ * @property {number} middle
+ * @property {number} sd of the middle
+ * @property {number} half width to either side that holds eight of ten to come
+ * @property {number} count values that the middle is made of
+ * @property {"zone"|"car"} of
  */
-export function earlierUsual(outing, zone, before) {
-  return outing
-    .closuresInOrder()
-    .filter((c) => c.number < before && !c.slow && c.t95 !== null && (zone === null || c.zone === zone));
+
+/** @param {{zone: number, value: number}[]} values @param {number} zone @returns {Usual|null} null: not known yet */
+export function usualOf(values, zone) {
+  /** @type {Map<number, number[]>} */
+  const zones = new Map();
+  for (const v of values) zones.set(v.zone, [...(zones.get(v.zone) ?? []), v.value]);
+  const within = [...zones.values()].map((group) => ({freedom: group.length - 1, squares: squaresOf(group)}));
+  const freedom = within.reduce((sum, g) => sum + g.freedom, 0);
+  const here = zone > 0 ? zones.get(zone) ?? [] : [];
+  if (here.length > 0 && freedom >= LEAST_FREEDOM) {
+    return usual(here, within.reduce((sum, g) => sum + g.squares, 0), freedom, 'zone');
+  }
+  const all = values.map((v) => v.value);
+  return all.length >= LEAST_FOR_USUAL ? usual(all, squaresOf(all), all.length - 1, 'car') : null;
+}
+
+/** @param {number[]} values @param {number} squares @param {number} freedom @param {"zone"|"car"} of @returns {Usual} */
+function usual(values, squares, freedom, of) {
+  const spread = Math.sqrt(squares / freedom);
+  const count = values.length;
+  return {middle: meanOf(values), sd: spread / Math.sqrt(count), half: studentTenth(freedom) * spread * Math.sqrt(1 + 1 / count), count, of};
+}
+
+/** @param {number[]} values */
+function meanOf(values) {
+  return values.reduce((sum, v) => sum + v, 0) / values.length;
+}
+
+/** @param {number[]} values */
+function squaresOf(values) {
+  const mean = meanOf(values);
+  return values.reduce((sum, v) => sum + (v - mean) ** 2, 0);
+}
+
+/** Closings before number `before` that came back whole and were not slow. @param {Outing} outing @param {number} before */
+export function earlierUsual(outing, before) {
+  return outing.closuresInOrder().filter((c) => c.number < before && !c.slow && c.t95 !== null);
 }
 
 /**
  * @typedef {object} UsualBand
- * @property {number} count closings that it is made of
- * @property {number[]} t empty where there are too few
- * @property {number[]} low tenth of the closings' medians
+ * @property {number} count closings that its middle is made of
+ * @property {"zone"|"car"} of
+ * @property {number[]} share levels of the flap's downforce; empty where the usual is not known yet
+ * @property {number[]} early time after shut, s, at which it is reached
  * @property {number[]} middle
- * @property {number[]} high
+ * @property {number[]} late
  */
 
 /**
- * The band of the zone's usual closings: at each instant the 10 %, 50 % and 90 % quantiles of their final curves.
- * @param {Outing} outing @param {number} zone @param {number} before @returns {UsualBand}
+ * The band of usual closings: when each share of the flap's downforce is usually back. Closings are compared in chords
+ * of travel, so that speed is out of it.
+ * @param {Outing} outing @param {number} zone @param {number} before @param {number} chord_time s of the closing looked at
+ * @returns {UsualBand}
  */
-export function usualBand(outing, zone, before) {
-  const curves = earlierUsual(outing, zone, before)
-    .map((c) => outing.regrowths.get(c.number))
-    .filter((r) => r !== undefined && r.final && r.shut);
+export function usualBand(outing, zone, before, chord_time) {
+  const curves = earlierUsual(outing, before).flatMap((c) => {
+    const curve = outing.regrowths.get(c.number);
+    return curve && curve.final && curve.shut && curve.chord_time > 0 ? [{zone: c.zone, chords: chordsOf(curve)}] : [];
+  });
   /** @type {UsualBand} */
-  const band = {count: curves.length, t: [], low: [], middle: [], high: []};
-  if (zone === 0 || curves.length < LEAST_FOR_USUAL) return band;
-  const first = /** @type {import('./protocol.js').Regrowth} */ (curves[0]);
-  first.t.forEach((t, i) => {
-    const shares = ascending(curves.map((curve) => curve?.share[i] ?? NaN).filter(Number.isFinite));
-    if (shares.length < LEAST_FOR_USUAL) return;
-    band.t.push(t);
-    band.low.push(quantile(shares, 0.1));
-    band.middle.push(quantile(shares, 0.5));
-    band.high.push(quantile(shares, 0.9));
+  const band = {count: curves.length, of: 'car', share: [], early: [], middle: [], late: []};
+  SHARES.forEach((level, k) => {
+    const values = curves.map((c) => ({zone: c.zone, value: c.chords[k]})).filter((v) => Number.isFinite(v.value));
+    const at = usualOf(values, zone);
+    if (!at) return;
+    band.of = at.of;
+    band.count = at.count;
+    band.share.push(level);
+    band.early.push((at.middle - at.half) * chord_time);
+    band.middle.push(at.middle * chord_time);
+    band.late.push((at.middle + at.half) * chord_time);
   });
   return band;
 }
 
-/**
- * The zone's usual margin: 10 %, 50 %, 90 % quantiles over its closings that were not slow.
- * @param {Closure[]} closures of the zone @returns {{low: number, middle: number, high: number}|null}
- */
-export function usualMargin(closures) {
-  const margins = ascending(closures.filter((c) => !c.slow && c.margin).map((c) => /** @type {any} */ (c.margin)[0]));
-  if (margins.length < LEAST_FOR_USUAL) return null;
-  return {low: quantile(margins, 0.1), middle: quantile(margins, 0.5), high: quantile(margins, 0.9)};
+/** "usual here (2 earlier)": what a band stands for. @param {UsualBand} band */
+export function usualWords(band) {
+  if (band.share.length === 0) return `usual not known yet (${band.count} of ${LEAST_FOR_USUAL} closings)`;
+  return band.of === 'zone' ? `usual here (${band.count} earlier)` : `usual in all zones (${band.count} earlier)`;
+}
+
+/** @type {WeakMap<import('./protocol.js').Regrowth, number[]>} */
+const reached = new WeakMap();
+
+/** Chords of travel until each of SHARES was back. @param {import('./protocol.js').Regrowth} curve of a judged closing */
+function chordsOf(curve) {
+  const known = reached.get(curve) ?? SHARES.map((level) => reaches(curve.t, curve.share, level) / curve.chord_time);
+  reached.set(curve, known);
+  return known;
+}
+
+/** Where the margin of the zone's next usual closing lies. @param {Outing} outing @param {number} zone @param {number} before @returns {Usual|null} */
+export function usualMargin(outing, zone, before) {
+  const values = earlierUsual(outing, before).flatMap((c) => (c.margin && c.zone > 0 ? [{zone: c.zone, value: c.margin[0]}] : []));
+  const found = usualOf(values, zone);
+  return found?.of === 'zone' ? found : null; // another zone's brakes say nothing of this one's
 }
 
 /**
- * How many times its usual a closing took, in chords, so that speed is out of it: against the zone's own earlier
- * closings, or, where those are too few, against the earlier ones of every zone.
- * @param {Outing} outing @param {Closure} closure
+ * How many times its usual a closing took, in chords.
+ * @param {Outing} outing @param {Closure} closure @param {number} before usual by the closings before this number
  * @returns {{factor: number, sd: number, of: "zone"|"car", count: number}|null}
  */
-export function timesUsual(outing, closure) {
-  if (closure.chords === null || closure.t95 === null) return null;
-  for (const of of /** @type {const} */ (['zone', 'car'])) {
-    if (of === 'zone' && closure.zone === 0) continue;
-    const earlier = earlierUsual(outing, of === 'zone' ? closure.zone : null, closure.number);
-    const chords = ascending(earlier.map((c) => c.chords).filter((x) => x !== null));
-    if (chords.length < LEAST_FOR_USUAL) continue;
-    const usual = quantile(chords, 0.5);
-    const factor = closure.chords / usual;
-    // The interval's width gives the closing's own uncertainty; the median's is 1.25 sd / sqrt(n) of a normal sample.
-    const own = logSd(closure);
-    const spread = standardDeviation(chords.map((c) => Math.log(c / usual)));
-    return {factor, sd: factor * Math.hypot(own, (1.25 * spread) / Math.sqrt(chords.length)), of, count: chords.length};
-  }
-  return null;
+export function timesUsual(outing, closure, before) {
+  if (closure.chords === null || closure.t95 === null || closure.chords <= 0) return null;
+  const values = earlierUsual(outing, before).flatMap((c) => (c.chords !== null && c.chords > 0 ? [{zone: c.zone, value: Math.log(c.chords)}] : []));
+  const found = usualOf(values, closure.zone);
+  if (!found) return null;
+  const factor = Math.exp(Math.log(closure.chords) - found.middle);
+  return {factor, sd: factor * Math.hypot(logSd(closure), found.sd), of: found.of, count: found.count};
 }
 
 /** Standard uncertainty of ln t95 from its 95 % interval. @param {Closure} c */
 function logSd(c) {
   if (!c.t95_low || !c.t95_high || c.t95_low <= 0) return 0;
   return Math.log(c.t95_high / c.t95_low) / (2 * 1.96);
-}
-
-/** @param {number[]} values */
-function standardDeviation(values) {
-  const mean = values.reduce((sum, v) => sum + v, 0) / values.length;
-  return Math.sqrt(values.reduce((sum, v) => sum + (v - mean) ** 2, 0) / Math.max(1, values.length - 1));
 }

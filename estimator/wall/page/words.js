@@ -1,6 +1,6 @@
 // SPDX-License-Identifier: MIT
 // What the page says, as plain words and the name of a mark (marks.js) for each. No drawing.
-import {fixed, plusMinus, quantityText, span, clock} from "./units.js";
+import {fixed, plusMinus, quantityText, span, clock, msRange} from "./units.js";
 import {timesUsual} from "./usual.js";
 
 /** @typedef {import('./protocol.js').Closure} Closure */
@@ -44,7 +44,7 @@ export function paceAnswer(outing, c) {
   }
   if (c.t95 === null) return {mark: 'unknown', word: 'Unknown', detail: 'the data could not tell'};
   const back = `back in ${span(c.t95)}${intervalText(c)}`;
-  const times = timesUsual(outing, c);
+  const times = timesUsual(outing, c, c.number);
   const factor = times ? `${plusMinus(times.factor, times.sd, 1)} × ${times.of === 'zone' ? 'this zone’s' : 'the car’s'} usual` : '';
   if (c.slow) return {mark: 'slow', word: times ? `Slow: ${fixed(times.factor, 1)} × usual` : 'Slow', detail: times ? `${factor}; ${back}` : back};
   if (!c.usual_known) return {mark: 'unknown', word: 'Usual not known yet', detail: back};
@@ -54,7 +54,7 @@ export function paceAnswer(outing, c) {
 /** @param {Closure} c */
 function intervalText(c) {
   if (c.t95_low === null || c.t95_high === null) return '';
-  return ` (${fixed(c.t95_low * 1000, 0)}–${fixed(c.t95_high * 1000, 0)})`;
+  return ` (${msRange(c.t95_low, c.t95_high)})`;
 }
 
 /** @param {number|null} share */

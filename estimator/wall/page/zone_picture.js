@@ -4,7 +4,6 @@
 import {svg, scale, ticks} from "./svg.js";
 import {fixed} from "./units.js";
 import {mark, closureMark} from "./marks.js";
-import {usualMargin} from "./usual.js";
 
 /** @typedef {import('./protocol.js').Closure} Closure */
 
@@ -32,6 +31,7 @@ export function zoneRanges(closures) {
  * @property {number} zone
  * @property {Closure[]} closures of this zone
  * @property {{laps: [number, number], margin: [number, number]}} ranges
+ * @property {import('./usual.js').Usual|null} usual margin, from the closings before the one that is looked at
  * @property {number} chosen number of the closing that Regrowth shows
  * @property {number} width px
  * @property {number} height px
@@ -39,20 +39,20 @@ export function zoneRanges(closures) {
  */
 
 /** @param {ZoneView} view @returns {SVGElement} */
-export function zonePicture({zone, closures, ranges, chosen, width, height, em}) {
+export function zonePicture({zone, closures, ranges, usual, chosen, width, height, em}) {
   const plot = {left: 2.9 * em, right: width - 0.9 * em, top: 0.7 * em, bottom: height - 1.5 * em};
   const x = scale(ranges.laps[0] - 0.4, ranges.laps[1] + 0.4, plot.left, plot.right);
   const y = scale(ranges.margin[0], ranges.margin[1], plot.bottom, plot.top);
   const radius = Math.max(0.3 * em, Math.min(0.46 * em, (x(1) - x(0)) * 0.22));
   const root = svg('svg', {class: 'picture zone-picture', viewBox: `0 0 ${width} ${height}`, 'font-size': em, role: 'img', 'aria-label': spoken(zone, closures)});
-  const usual = usualMargin(closures);
   if (usual) {
-    const top = Math.min(y(usual.high), y(usual.middle) - 2);
-    const bottom = Math.max(y(usual.low), y(usual.middle) + 2);
+    const inside = (/** @type {number} */ value) => Math.max(plot.top, Math.min(plot.bottom, y(value)));
+    const top = Math.min(inside(usual.middle + usual.half), inside(usual.middle) - 2);
+    const bottom = Math.max(inside(usual.middle - usual.half), inside(usual.middle) + 2);
     root.append(svg('rect', {class: 'usual-ground usual-edge', x: plot.left, width: plot.right - plot.left, y: top, height: bottom - top}));
   }
   root.append(svg('rect', {class: 'late-ground', x: plot.left, width: plot.right - plot.left, y: y(0), height: plot.bottom - y(0)}));
-  for (const tick of ticks(ranges.margin[0], ranges.margin[1], Math.max(2, Math.floor((plot.bottom - plot.top) / (1.6 * em))))) {
+  for (const tick of ticks(ranges.margin[0], ranges.margin[1], Math.max(2, Math.floor((plot.bottom - plot.top) / (1.75 * em))))) {
     if (tick !== 0) root.append(svg('line', {class: 'grid', x1: plot.left, x2: plot.right, y1: y(tick), y2: y(tick)}));
     root.append(svg('text', {class: 'tick', x: plot.left - 0.35 * em, y: y(tick) + 0.32 * em, 'text-anchor': 'end'}, fixed(tick, 1)));
   }

@@ -4,6 +4,7 @@ import {html} from "./svg.js";
 import {measure} from "./wall.js";
 import {icon} from "./marks.js";
 import {zonePicture, zoneRanges} from "./zone_picture.js";
+import {usualMargin} from "./usual.js";
 
 /** @param {import('./wall.js').Wall} wall @param {HTMLElement} root @returns {import('./wall.js').Part} */
 export function zonesPart(wall, root) {
@@ -42,7 +43,7 @@ export function zonesPart(wall, root) {
     const ranges = zoneRanges(closures);
     const chosen = wall.closing();
     const sizes = cells.map((c) => measure(c.canvas));
-    cells.forEach((c, i) => c.canvas.append(zonePicture({zone: c.zone, closures: c.of, ranges, chosen, ...sizes[i]})));
+    cells.forEach((c, i) => c.canvas.append(zonePicture({zone: c.zone, closures: c.of, ranges, usual: usualMargin(wall.outing, c.zone, chosen), chosen, ...sizes[i]})));
   }
 
   return {needs: ['hello', 'closures', 'closure', 'chosen', 'preferences', 'size'], least_ms: 50, draw};
