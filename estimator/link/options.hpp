@@ -10,17 +10,19 @@ namespace holdfast::link {
 inline constexpr int kSendQueueDropping = 4000;
 inline constexpr int kSendQueueWaiting = 100;
 // Queue of a subscriber, in messages. Short, since beyond it the sender's queue fills, where the choice
-// between dropping and waiting is made; and since a socket whose queue is full reads nothing, heartbeats
-// neither, until half is taken.
+// between dropping and waiting is made.
 inline constexpr int kReceiveQueue = 64;
 
-// A peer that says nothing is asked this often, and given up after the time-out: a car that is switched off
-// or drives out of range is dialled again in seconds, not after TCP's quarter of an hour. (That data have
-// stopped is noticed earlier, by their absence.) Each end judges for itself and imposes no time to live on
-// the other. A sender that waits gives a subscriber that stands still as long as its patience for a full
-// queue.
-inline constexpr int kHeartbeatInterval_ms = 2000;
-inline constexpr int kHeartbeatTimeout_ms = 10'000;
+// A peer that is switched off or drives out of range is given up after about ten seconds and dialled again,
+// not after TCP's quarter of an hour: an idle connection by TCP's own probes, one with data on their way by
+// how long these stay unacknowledged, where a sender that waits gives a subscriber that stands still as long
+// as its patience for a full queue. (That data have stopped is noticed earlier, by their absence.) ZeroMQ's
+// own heartbeats are off: with them libzmq 4.3.4 aborts the program, or loses what has arrived, where a
+// subscriber whose queue is full has a peer that goes away (libzmq issues 3937 and 4767).
+inline constexpr int kKeepaliveIdle_s = 2;
+inline constexpr int kKeepaliveInterval_s = 2;
+inline constexpr int kKeepaliveProbes = 4;
+inline constexpr int kUnacknowledged_ms = 10'000;
 
 // A node that starts again is found at once, and one that stays away is not hammered: the wait doubles up to
 // the most.

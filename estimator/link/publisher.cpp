@@ -5,6 +5,7 @@
 #include <zmq.hpp>
 
 #include "estimator/link/options.hpp"
+#include "estimator/link/watch_peer.hpp"
 
 namespace holdfast::link {
 
@@ -23,9 +24,7 @@ struct Publisher::Socket {
         const bool waits = options.when_full == WhenFull::wait;
         socket.set(zmq::sockopt::sndhwm, waits ? kSendQueueWaiting : kSendQueueDropping);
         socket.set(zmq::sockopt::linger, waits ? kLingerWaiting_ms : kLingerDropping_ms);
-        socket.set(zmq::sockopt::heartbeat_ivl, kHeartbeatInterval_ms);
-        socket.set(zmq::sockopt::heartbeat_timeout,
-                   waits ? static_cast<int>(options.patience.count()) : kHeartbeatTimeout_ms);
+        watch_peer(socket.handle(), waits ? static_cast<int>(options.patience.count()) : kUnacknowledged_ms);
         socket.set(zmq::sockopt::handshake_ivl, kHandshakeTimeout_ms);
         socket.set(zmq::sockopt::maxmsgsize, std::int64_t{kMaxSubscriptionBytes});
         // Every subscription and its end is told, not only the first and the last, so that they can be

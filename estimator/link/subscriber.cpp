@@ -7,6 +7,7 @@
 #include <zmq.hpp>
 
 #include "estimator/link/options.hpp"
+#include "estimator/link/watch_peer.hpp"
 
 namespace holdfast::link {
 
@@ -34,8 +35,7 @@ struct Subscriber::Socket {
         socket.set(zmq::sockopt::rcvhwm, kReceiveQueue);
         socket.set(zmq::sockopt::linger, 0);  // a subscriber has nothing to say that somebody would miss
         socket.set(zmq::sockopt::maxmsgsize, static_cast<std::int64_t>(kMaxWireBytes));
-        socket.set(zmq::sockopt::heartbeat_ivl, kHeartbeatInterval_ms);
-        socket.set(zmq::sockopt::heartbeat_timeout, kHeartbeatTimeout_ms);
+        watch_peer(socket.handle(), kUnacknowledged_ms);
         socket.set(zmq::sockopt::reconnect_ivl, kReconnectLeast_ms);
         socket.set(zmq::sockopt::reconnect_ivl_max, kReconnectMost_ms);
         socket.set(zmq::sockopt::connect_timeout, kConnectTimeout_ms);

@@ -102,6 +102,25 @@ TEST_CASE("waiting: a subscriber that is slow loses nothing") {
     CHECK(out.counters().stalls == 0);
 }
 
+TEST_CASE("a subscriber that is far behind when the sender leaves still reads all of it") {
+    constexpr int kMessages = 120;                 // more than the subscriber's queue, less than both
+    constexpr milliseconds kLongAfterwards{2500};  // probes for a lost peer have come by then
+    std::optional<Publisher> out = publisher(WhenFull::wait);
+    Subscriber in = subscriber(out->endpoint(), {Topic::frames});
+    REQUIRE(out->wait_for_subscribers(Topic::frames, 1, kLongEnough));
+    for (int i = 0; i < kMessages; ++i) out->send(Topic::frames, kLargeMessage + std::to_string(i));
+    out.reset();
+    std::this_thread::sleep_for(kLongAfterwards);
+    int read = 0;
+    while (read < kMessages) {
+        const auto message = in.receive(milliseconds{1000});
+        if (!message) break;
+        REQUIRE(message->bytes.substr(kLargeMessage.size()) == std::to_string(read));
+        ++read;
+    }
+    CHECK(read == kMessages);
+}
+
 TEST_CASE("waiting: a subscriber that takes nothing at all is waited for no longer than asked") {
     Publisher out = publisher(WhenFull::wait, "tcp://127.0.0.1:*", milliseconds{20});
     SendResult result = SendResult::sent;
