@@ -23,7 +23,7 @@ struct ServerOptions {
     std::size_t most_connections = 96;                // viewers and those who fetch files
     std::chrono::milliseconds request_limit{10'000};  // for a request to come whole, an answer to be taken
     std::chrono::milliseconds idle_limit{60'000};     // for a viewer to give a sign of life
-    std::chrono::milliseconds last_words{1000};  // for viewers to be sent what is left when the server goes
+    std::chrono::milliseconds last_words{3000};  // for viewers to be sent what is left when the server goes
 };
 
 struct ServerCounters {

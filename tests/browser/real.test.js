@@ -61,23 +61,23 @@ test('a live outing from its first second to its end', async () => {
     await stands(page, '#link', 'link lost');
     await context.setOffline(false);
     await stands(page, '#link', 'link up');
-    await until(async () => (await page.locator('.zone-closing').count()) >= 1, 5000, 'what was there is there again');
+    await until(async () => (await page.locator('.zone-closing').count()) >= 1, 20000, 'what was there is there again');
 
     // Reload in mid-outing.
     await page.reload();
     await stands(page, '#link', 'link up');
-    await until(async () => (await page.locator('.zone-closing').count()) >= 1, 5000, 'closings after a reload');
+    await until(async () => (await page.locator('.zone-closing').count()) >= 1, 20000, 'closings after a reload');
 
     // Alarm, seen by one viewer, gone for another who joined late.
     await until(async () => (await page.locator('.alarm').count()) >= 1, 90000, 'an alarm');
     const late = await openPage(browser, url, {viewport: {width: 390, height: 844}});
-    await until(async () => (await late.page.locator('.zone-closing').count()) === (await page.locator('.zone-closing').count()), 10000, 'the late viewer has all closings');
+    await until(async () => (await late.page.locator('.zone-closing').count()) === (await page.locator('.zone-closing').count()), 20000, 'the late viewer has all closings');
     const text = await page.locator('.alarm-text').first().innerText();
     assert.equal(await late.page.locator('.alarm-text').first().innerText(), text);
     await page.keyboard.press('a');
     const answered = (/** @type {import('playwright-core').Page} */ p) => p.evaluate((t) => ![...document.querySelectorAll('.alarm')].some((a) => a.querySelector('.acknowledge') && a.textContent?.includes(t)), text);
-    await until(() => answered(page), 5000, 'acknowledged here');
-    await until(() => answered(late.page), 5000, 'acknowledged there');
+    await until(() => answered(page), 20000, 'acknowledged here');
+    await until(() => answered(late.page), 20000, 'acknowledged there');
 
     assert.equal(await node.ended, 0, node.told.text);
     await stands(page, '#link', 'ended, complete');

@@ -17,6 +17,7 @@ wall::ServerOptions options() {
     wall::ServerOptions o;
     o.listen = "127.0.0.1:0";
     o.files = examples::kFiles;
+    o.last_words = std::chrono::milliseconds(100);  // most viewers here do not read to the end
     return o;
 }
 
