@@ -173,12 +173,20 @@ void Terminal::clear_status() {
     status_shown_ = false;
 }
 
+// Without line wrap while it is written: a terminal narrower than the line cuts it, so that one line is
+// cleared by the next.
 void Terminal::show_status(const core::Estimate& e) {
-    *status_ << "\r\033[K";
+    const bool known = (e.flags & (core::kNotConverged | core::kStale)) == 0;
+    *status_ << "\r\033[K\033[?7l";
     if (progress_ >= 0.0) *status_ << fixed(progress_ * 100.0, 0) << " %  ";
-    *status_ << fixed(seconds(e.time_ns), 1) << " s  " << fixed(e.speed_mps, 1) << " m/s  downforce front "
-             << with_sd(e.downforce_front_n, 0) << " N, rear " << with_sd(e.downforce_rear_n, 0) << " N  "
-             << flag_words(e.flags) << std::flush;
+    *status_ << fixed(seconds(e.time_ns), 1) << " s  " << fixed(e.speed_mps, 1) << " m/s  downforce ";
+    if (known) {
+        *status_ << "front " << with_sd(e.downforce_front_n, 0) << " N, rear "
+                 << with_sd(e.downforce_rear_n, 0) << " N";
+    } else {
+        *status_ << "unknown";
+    }
+    *status_ << "  " << flag_words(e.flags) << "\033[?7h" << std::flush;
     status_shown_ = true;
 }
 

@@ -68,6 +68,8 @@ TEST_CASE("the terminal colours alarms only where asked, and writes a status lin
     CHECK(plain.str().find('\r') == std::string::npos);
     CHECK(coloured.str().find("\033[1;31mALARM") != std::string::npos);
     CHECK(status.str().find('\r') != std::string::npos);
+    // Nothing has been seen yet: no number is shown.
+    CHECK_THAT(status.str(), Contains("downforce unknown") && !Contains(" N"));
     CHECK_THAT(plain.str(), Contains("INCOMPLETE: stopped by hand") && Contains(folder.path().string()));
 }
 
