@@ -61,5 +61,8 @@ In $out/:
   estimates.csv   speed, downforce and drag areas, 50 times a second, with their uncertainties
   zones.csv       the closings by braking zone
   summary.json    the outing as a whole, and the health of each sensor
+  report.html     all of it in pictures and tables, for any browser; open it by double click
+The wall page shows the outing in a browser as it goes on; this serves it for the same outing until Ctrl-C:
+  build/bin/holdfast replay $outing/outing.hfr --car $outing/car.toml --out $out --page 127.0.0.1:8080
 README.md says what every column means, and how to bring a log of your own.
 END
