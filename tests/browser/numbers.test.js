@@ -169,7 +169,7 @@ test('answers in words, unknown never read as fine', () => {
   assert.deepEqual(flowAnswer(of(11), SI), {mark: 'short', word: 'Short at the brakes', detail: '1703\u00a0±\u00a0175 N missing; 370\u00a0±\u00a083 ms too late'});
   assert.equal(flowAnswer({...of(1), verdict: null, t95: null, tau: null}, SI).mark, 'unknown');
   assert.equal(flowAnswer({...of(1), shortfall: null, margin: null, verdict: 'unclear'}, SI).detail, 'missing downforce unknown');
-  assert.equal(paceAnswer(outing, of(1)).word, 'Usual not known yet');
+  assert.equal(paceAnswer(outing, of(1)).word, 'Not known yet');
   assert.equal(paceAnswer(outing, of(14)).word, 'Settles at 49 %');
   assert.match(paceAnswer(outing, of(11)).word, /^Slow: \d\.\d × usual$/);
   assert.equal(paceAnswer(outing, {...of(5), t95: null}).word, 'Unknown');

@@ -58,7 +58,7 @@ test('regrowth: usual is not known before three closings', async () => {
   const page = await open(soFar(70));
   await stands(page, '#regrowth', 'usual not known yet (2 of 3 closings)');
   assert.equal(await page.locator('.regrowth-picture .usual-band').count(), 0);
-  await stands(page, '#answers', 'Usual not known yet');
+  await stands(page, '#answers', 'Not known yet');
 });
 
 test('a closing grows before it is judged', async () => {

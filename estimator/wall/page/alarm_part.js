@@ -21,7 +21,7 @@ export function burstLed(alarm, all) {
 
 /** @param {import('./wall.js').Wall} wall @param {HTMLElement} root @returns {import('./wall.js').Part} */
 export function alarmPart(wall, root) {
-  const quiet = html('p', {class: 'alarms-quiet'}, icon('good'), 'Nothing to answer.');
+  const quiet = html('p', {class: 'alarms-quiet'});
   const list = html('ul', {class: 'alarm-list', 'aria-live': 'assertive', 'aria-relevant': 'additions'});
   const pastTitle = html('summary');
   const pastList = html('ul', {class: 'alarm-past'});
@@ -41,6 +41,8 @@ export function alarmPart(wall, root) {
     const open = railOrder(alarms.filter((a) => !a.acknowledged || a.active));
     const waiting = open.filter((a) => !a.acknowledged);
     quiet.hidden = open.length > 0;
+    // Before an outing has begun, no alarm is no good news.
+    quiet.replaceChildren(...(wall.outing.hello ? [icon('good'), 'Nothing to answer.'] : [icon('unknown'), 'No outing yet.']));
     root.parentElement?.classList.toggle('has-alarms', waiting.length > 0);
     document.title = waiting.length ? `(${waiting.length}) Holdfast` : 'Holdfast';
     const focused = /** @type {HTMLElement|null} */ (document.activeElement)?.dataset?.id;

@@ -3,6 +3,7 @@
 import {html} from "./svg.js";
 import {icon} from "./marks.js";
 import {flowAnswer, paceAnswer, sensorAnswer, percent, closingName} from "./words.js";
+import {fixed} from "./units.js";
 import {valueAt} from "./curve.js";
 
 /** @typedef {import('./words.js').Answer} Answer */
@@ -50,13 +51,14 @@ export function answersPart(wall, root) {
       const words = `${closingName(closure)}: ${flow.word}, ${flow.detail}. ${pace.word}.`;
       if (aloud.textContent !== words) aloud.textContent = words;
     } else if (regrowth) {
-      const share = valueAt(regrowth.t, regrowth.share, regrowth.known_until);
-      const words = Number.isFinite(share) ? `${percent(share)} back` : 'Flap closing';
-      show(0, {mark: 'growing', word: words, detail: 'growing; not judged yet'}, `closing ${number}`);
+      const [share, low, high] = [regrowth.share, regrowth.low, regrowth.high].map((curve) => valueAt(regrowth.t, curve, regrowth.known_until));
+      const known = Number.isFinite(share);
+      show(0, {mark: 'growing', word: known ? `${percent(share)} back` : 'Flap closing', detail: known ? `${fixed(low * 100, 0)}–${percent(high)}, growing; not judged yet` : 'not judged yet'}, `closing ${number}`);
       show(1, {mark: 'growing', word: '…', detail: 'known when the closing is judged'});
     } else {
-      show(0, {mark: 'unknown', word: 'No closing yet', detail: 'the flap has not closed in this outing'});
-      show(1, {mark: 'unknown', word: '–', detail: ''});
+      const [word, detail] = outing.hello ? ['No closing yet', 'the flap has not closed in this outing'] : ['No outing yet', 'nothing has come from the car'];
+      show(0, {mark: 'unknown', word, detail});
+      show(1, {mark: 'unknown', word: '–', detail: 'no closing to compare'});
     }
     show(2, sensors());
   }

@@ -31,8 +31,9 @@ export function nowPart(wall, root) {
     const value = html('span', {class: 'figure now-value', id: `now-${id}`});
     const spread = html('span', {class: 'now-spread'});
     const when = html('span', {class: 'now-age'});
-    root.append(html('div', {class: 'now-cell'}, html('span', {class: 'now-title'}, title), value, spread, when));
-    return {value, spread, when};
+    const last = html('span', {class: 'now-age now-last'});
+    root.append(html('div', {class: 'now-cell'}, html('p', {class: 'now-head'}, html('span', {class: 'now-title'}, title), when), value, spread, last));
+    return {value, spread, when, last};
   };
   const front = cell('front', 'Downforce front');
   const rear = cell('rear', 'Downforce rear');
@@ -52,18 +53,20 @@ export function nowPart(wall, root) {
       c.value.textContent = value;
       c.spread.textContent = `± ${sd} ${unit}`;
       c.when.textContent = `${age(wall.age())} old`;
+      c.last.textContent = '';
       return;
     }
     c.value.textContent = 'unknown';
     c.spread.textContent = why ?? 'not estimated';
     const {series, now, end} = wall.outing;
     const known = series.lastKnown(column);
-    if (known === null) c.when.textContent = '';
+    c.when.textContent = '';
+    if (known === null || now?.flags.includes('not_converged')) c.last.textContent = ''; // never was
     else if (q && unknownReason(now?.flags ?? []) === null) {
       // Nothing was amiss with the last one but its age.
       const when = end ? `at ${clock(known)}` : `${age(series.newest - known + wall.age())} ago`;
-      c.when.textContent = `${plusMinus(q[0] * factor, q[1] * factor, most)} ${unit} ${when}`;
-    } else c.when.textContent = `last known ${age(series.newest - known + wall.age())} ago`;
+      c.last.textContent = `${plusMinus(q[0] * factor, q[1] * factor, most)} ${unit} ${when}`;
+    } else c.last.textContent = `last known ${age(series.newest - known + wall.age())} ago`;
   }
 
   function draw() {

@@ -40,6 +40,7 @@ function brakeWords({closure: c, regrowth: r, units, em, width}) {
 function timeEnd(view, room) {
   const {regrowth: r, closure: c} = view;
   const last = r.t[r.t.length - 1];
+  if (!r.final && r.known_until < 0.5) return Math.min(last, 0.6);
   if (!r.final || !c || !c.whole) return last;
   const words = Math.min(0.5, brakeWords(view).reach / room);
   const brake = c.time_brake === null ? 0 : r.t[0] + (c.time_brake - r.time_shut - r.t[0]) / (1 - words);

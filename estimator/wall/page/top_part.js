@@ -39,6 +39,7 @@ export function topPart(wall) {
     if (end) return {mark: 'full', words: end.complete ? 'ended, complete' : 'ended, incomplete'};
     if (wall.pageLink === 'lost') return {mark: 'distrusted', words: 'link lost'};
     if (wall.pageLink === 'connecting') return {mark: 'unknown', words: 'connecting'};
+    if (!wall.outing.hello) return {mark: 'unknown', words: 'waiting for the car'};
     if (now?.link.state === 'silent') return {mark: 'distrusted', words: `car silent ${age(wall.age())}`};
     if (now?.link.state === 'ended') return {mark: 'full', words: 'ended'};
     const lost = now?.link.lost ?? 0;

@@ -47,7 +47,7 @@ export function paceAnswer(outing, c) {
   const times = timesUsual(outing, c, c.number);
   const factor = times ? `${plusMinus(times.factor, times.sd, 1)} × ${times.of === 'zone' ? 'this zone’s' : 'the car’s'} usual` : '';
   if (c.slow) return {mark: 'slow', word: times ? `Slow: ${fixed(times.factor, 1)} × usual` : 'Slow', detail: times ? `${factor}; ${back}` : back};
-  if (!c.usual_known) return {mark: 'unknown', word: 'Usual not known yet', detail: back};
+  if (!c.usual_known) return {mark: 'unknown', word: 'Not known yet', detail: `too few closings; ${back}`};
   return {mark: 'usual', word: 'Usual pace', detail: times ? `${factor}; ${back}` : back};
 }
 
