@@ -72,7 +72,7 @@ test('numbers are those of the files', async () => {
   assert.equal(await page.locator('#alarms tbody tr').count(), 2, 'closing 6, short; closings 4 and 6, slow');
   const facts = await read(page, '.facts');
   assert.match(facts, /Air \d+\.\d( to \d+\.\d)? °C, \d+( to \d+)? hPa, \d+( to \d+)? % humidity, density 1\.\d{3}/);
-  assert.match(facts, /Mass \d+\.\d ± \d+\.\d kg at the start.* kg of fuel a lap, .* over 2 laps/);
+  assert.match(facts, /Mass \d+\.\d ± \d+\.\d kg at the start.* kg of fuel a lap, .* kg by the beginning of the last of 3 laps/);
   assert.match(facts, /Smoothed areas use the whole outing/);
   assert.equal(await page.locator('.zone-report').count(), zones);
   assert.equal(await page.locator('.zone-closing').count(), rows.filter((r) => r.zone !== '0').length);

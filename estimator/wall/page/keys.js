@@ -107,7 +107,7 @@ function fillHelp(dialog) {
   dialog.append(
     html('h2', {id: 'help-title'}, 'Keys'),
     html('table', {class: 'help-table'}, html('tbody', {}, ...rows)),
-    html('p', {}, 'A value with ± shows one standard uncertainty; bands and whiskers show 95 %. Times are the source’s own. Click a mark in Zones to see that closing; drag in Traces to zoom, double-click to come back.'),
+    html('p', {}, 'A value with ± shows one standard uncertainty; bands and whiskers show 95 %. The usual band is where eight of ten closings would lie that are like those before that were not slow; it is wide while they are few. Times are the source’s own. Click a mark in Zones to see that closing; drag in Traces to zoom, double-click to come back.'),
     html('form', {method: 'dialog'}, html('button', {}, 'Close')),
   );
 }

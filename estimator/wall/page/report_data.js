@@ -62,7 +62,9 @@ function massWords({hello, end}) {
   const laps = end?.conditions?.lap;
   if (!fuel || fuel[0] === 0) return `${start}; no fuel taken off`;
   const each = `${plusMinus(...fuel, 2)} kg of fuel a lap`;
-  return laps ? `${start}; ${each}, ${fixed(fuel[0] * (laps[1] - laps[0]), 1)} kg over ${fixed(laps[1] - laps[0], 0)} laps` : `${start}; ${each}, but no lap channel: none taken off`;
+  if (!laps) return `${start}; ${each}, but no lap channel: none taken off`;
+  const whole = laps[1] - laps[0];
+  return `${start}; ${each}, ${whole > 0 ? `${fixed(fuel[0] * whole, 1)} kg by the beginning of the last of ${fixed(whole + 1, 0)} laps` : 'none taken off within the first'}`;
 }
 
 /** @param {Outing} outing */

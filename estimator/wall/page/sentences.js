@@ -42,7 +42,7 @@ function pace(outing, closures) {
     return `Closing ${c.number} (lap ${c.lap}, zone ${c.zone}) was the slowest, ${plusMinus(times.factor, times.sd, 1)} times ${whose} usual; ${counted(slow.length, 'closing')} flagged slow in all (${slow.map((x) => x.number).join(', ')}).${settled}`;
   }
   if (slow.length) return `${counted(slow.length, 'closing')} flagged slow (${slow.map((c) => c.number).join(', ')}).${settled}`;
-  if (!closures.some((c) => c.usual_known)) return 'Too few closings to know what is usual for this car, so none could be called slow.';
+  if (!closures.some((c) => c.usual_known)) return 'None was slow by what is usual for such flaps; too few closings had come before to know what is usual for this car.';
   return 'None was slower than the car’s usual by more than the limit.';
 }
 
