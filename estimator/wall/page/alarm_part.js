@@ -75,7 +75,7 @@ function item(alarm, followers) {
   const state = alarm.acknowledged ? 'acknowledged, still so' : alarm.active ? 'still so' : 'over by itself';
   const again = alarm.times > 1 ? `, came ${alarm.times} times` : '';
   const first = followers > 0 ? `first of ${followers + 1}` : '';
-  // What made the program sure stands beside the state, for a second look.
+  // How sure the program is stands beside the time, for a second look.
   const [, words, sure] = /** @type {RegExpExecArray} */ (/^(.*?)(?: \((probability [^()]*)\))?$/s.exec(alarm.text.replace(/ ([±>]) /g, '\u00a0$1\u00a0')));
   return html(
     'li',
@@ -84,9 +84,9 @@ function item(alarm, followers) {
     html(
       'div',
       {class: 'alarm-words'},
-      html('p', {}, html('b', {class: 'alarm-severity'}, word), html('span', {class: 'figure'}, clock(alarm.t)), first ? html('span', {class: 'alarm-first'}, first) : null),
+      html('p', {}, html('b', {class: 'alarm-severity'}, word), html('span', {class: 'figure'}, clock(alarm.t)), sure ? html('span', {class: 'alarm-sure', title: sure}, sure.replace(/^probability \S+\s/, 'p ')) : null, first ? html('span', {class: 'alarm-first'}, first) : null),
       html('p', {class: 'alarm-text'}, words),
-      html('p', {class: 'alarm-state'}, [state + again, sure].filter(Boolean).join('; '), alarm.closure ? html('button', {type: 'button', class: 'plain', 'data-act': 'closing', 'data-closing': alarm.closure}, `show closing ${alarm.closure}`) : null),
+      html('p', {class: 'alarm-state'}, state + again, alarm.closure ? html('button', {type: 'button', class: 'plain', 'data-act': 'closing', 'data-closing': alarm.closure}, `show closing ${alarm.closure}`) : null),
     ),
     alarm.acknowledged ? null : html('button', {type: 'button', class: 'acknowledge', 'data-act': 'acknowledge', 'data-id': alarm.id, 'aria-label': `Seen: ${alarm.text}`}, 'Seen'),
   );

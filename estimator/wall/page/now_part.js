@@ -1,7 +1,7 @@
 // SPDX-License-Identifier: MIT
 // Now: downforce at each axle, drag area, balance; each with its interval and age, or "unknown" and why.
 import {html} from "./svg.js";
-import {plusMinus, unitOf, age, clock} from "./units.js";
+import {plusMinus, unitOf, age} from "./units.js";
 import {remarks, unknownReason} from "./words.js";
 
 /** @typedef {import('./protocol.js').Quantity} Quantity */
@@ -64,8 +64,8 @@ export function nowPart(wall, root) {
     if (known === null || now?.flags.includes('not_converged')) c.last.textContent = ''; // never was
     else if (q && unknownReason(now?.flags ?? []) === null) {
       // Nothing was amiss with the last one but its age.
-      const when = end ? `at ${clock(known)}` : `${age(series.newest - known + wall.age())} ago`;
-      c.last.textContent = `${plusMinus(q[0] * factor, q[1] * factor, most)} ${unit} ${when}`;
+      const value = `${plusMinus(q[0] * factor, q[1] * factor, most)} ${unit}`;
+      c.last.textContent = end ? `last: ${value}` : `${value} ${age(series.newest - known + wall.age())} ago`;
     } else c.last.textContent = `last known ${age(series.newest - known + wall.age())} ago`;
   }
 

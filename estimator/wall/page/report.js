@@ -20,6 +20,7 @@ const report = /** @type {HTMLElement} */ (document.getElementById('report'));
 document.title = `Holdfast report: ${outing.hello?.car ?? 'no outing'}`;
 report.replaceChildren(
   html('h1', {}, `Flap closings of ${outing.hello?.car ?? 'no outing'}`),
+  html('p', {class: 'quiet'}, 'Estimates with uncertainties, for a competent engineer to weigh. This is no safety device; the cautions stand at the end.'),
   dataSection(outing, UNITS),
   html('section', {}, html('h2', {}, 'The answer'), html('p', {class: 'answer'}, threeSentences(outing, UNITS).join(' '))),
   zonesSection(outing, UNITS),
