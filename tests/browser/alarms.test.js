@@ -16,6 +16,7 @@ test('alarms: latched, the first of a burst on top, acknowledged by click and by
   assert.match(first[1], /LOOK/);
   assert.match(first[2], /NOTE[\s\S]*load_rr[\s\S]*still so/);
   assert.equal(await page.title(), '(3) Holdfast');
+  assert.match(await read(page, '#alarms'), /^Alarms: 3 to answer/);
   // By click: the page asks, the program answers, only then is it gone.
   await page.getByRole('button', {name: /^Seen: closing 11: downforce short/}).click();
   assert.deepEqual(await heard(1), [{do: 'acknowledge', id: 1}]);

@@ -44,6 +44,7 @@ export function alarmPart(wall, root) {
     // Before an outing has begun, no alarm is no good news.
     quiet.replaceChildren(...(wall.outing.hello ? [icon('good'), 'Nothing to answer.'] : [icon('unknown'), 'No outing yet.']));
     root.parentElement?.classList.toggle('has-alarms', waiting.length > 0);
+    if (root.previousElementSibling) root.previousElementSibling.textContent = waiting.length ? `Alarms: ${waiting.length} to answer` : 'Alarms';
     document.title = waiting.length ? `(${waiting.length}) Holdfast` : 'Holdfast';
     const focused = /** @type {HTMLElement|null} */ (document.activeElement)?.dataset?.id;
     // Only what is new is added, so that it is said aloud once, and the focus stays where it is.
