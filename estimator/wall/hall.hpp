@@ -1,20 +1,12 @@
 // SPDX-License-Identifier: MIT
-// What the server's connections share. This header, watching.hpp and visit.hpp see Boost.Beast and are
-// included by server.cpp alone: Beast is slow to compile. Everything in them runs on the serving thread.
+// What the server's connections share. Everything in it but the acknowledgements is the serving thread's own.
 #pragma once
 
-#include <boost/asio/io_context.hpp>
-#include <boost/asio/ip/tcp.hpp>
-#include <boost/asio/post.hpp>
-#include <boost/asio/steady_timer.hpp>
-#include <boost/beast/core.hpp>
-#include <boost/beast/http.hpp>
-#include <boost/beast/websocket.hpp>
+#include <cstddef>
 #include <cstdint>
 #include <mutex>
 #include <set>
-#include <string_view>
-#include <utility>  // first: Boost 1.74 uses std::exchange without including it, which C++20 brings to light
+#include <utility>
 #include <vector>
 
 #include "estimator/wall/answer.hpp"
@@ -23,26 +15,21 @@
 
 namespace holdfast::wall {
 
-namespace asio = boost::asio;
-namespace beast = boost::beast;
-namespace http = beast::http;
-namespace websocket = beast::websocket;
-using tcp = asio::ip::tcp;
-using boost::system::error_code;
+// A viewer's connection: sends what the audience has for it, unless it is still sending.
+class Pumped {
+  public:
+    virtual void pump() = 0;
 
-inline std::string_view view(beast::string_view text) {
-    return {text.data(), text.size()};
-}
-inline beast::string_view view(std::string_view text) {
-    return {text.data(), text.size()};
-}
+  protected:
+    virtual ~Pumped() = default;
+};
 
 // What connections know of their server.
 struct Hall {
     House house;
     ServerOptions options;
     Audience audience;
-    std::set<class Watching*> watching;
+    std::set<Pumped*> watching;
     std::vector<Viewer*> viewers;  // of those
     std::size_t connections = 0;
     ServerCounters counters;

@@ -8,20 +8,27 @@
 #include <algorithm>
 #include <array>
 #include <atomic>
+#include <boost/asio/io_context.hpp>
+#include <boost/asio/ip/tcp.hpp>
+#include <boost/asio/post.hpp>
+#include <boost/asio/steady_timer.hpp>
 #include <mutex>
 #include <optional>
 #include <stdexcept>
 #include <thread>
-#include <utility>
+#include <utility>  // first: Boost 1.74 uses std::exchange without including it, which C++20 brings to light
 
+#include "estimator/wall/connection.hpp"
 #include "estimator/wall/hall.hpp"
 #include "estimator/wall/inbox.hpp"
 #include "estimator/wall/listen_address.hpp"
-#include "estimator/wall/visit.hpp"
-#include "estimator/wall/watching.hpp"
 
 namespace holdfast::wall {
 namespace {
+
+namespace asio = boost::asio;
+using tcp = asio::ip::tcp;
+using boost::system::error_code;
 
 constexpr int kSendBuffer = 128 * 1024;  // in the kernel: the staleness that a slow viewer may have
 constexpr std::chrono::microseconds kTick{16'667};  // 60 a second
@@ -109,7 +116,9 @@ class Server::Impl {
                 error_code ignored;
                 socket.set_option(tcp::no_delay(true), ignored);
                 socket.set_option(asio::socket_base::send_buffer_size(kSendBuffer), ignored);
-                std::make_shared<Visit>(hall_, std::move(socket))->read();
+                const bool ipv6 = socket.local_endpoint(ignored).protocol() == tcp::v6();
+                const int descriptor = socket.release(ignored);
+                if (!ignored) begin_connection(hall_, context_, descriptor, ipv6);
             }
             if (error == asio::error::operation_aborted) return;
             // Without file descriptors accept fails at once, again and again: leave the others their turn.
@@ -145,8 +154,8 @@ class Server::Impl {
         hall_.audience.tick(std::chrono::duration<double>(now - newest_row_).count(), heartbeat,
                             hall_.viewers);
         hall_.closing = closing_until_.has_value();
-        const std::vector<Watching*> all(hall_.watching.begin(), hall_.watching.end());
-        for (Watching* one : all) one->pump();
+        const std::vector<Pumped*> all(hall_.watching.begin(), hall_.watching.end());
+        for (Pumped* one : all) one->pump();
         viewers_.store(hall_.watching.size(), std::memory_order_relaxed);
         hall_.counters.viewers = hall_.watching.size();
         if (hall_.closing && (hall_.watching.empty() || now > *closing_until_)) context_.stop();
