@@ -36,8 +36,10 @@ Engine::Engine(const Car& car, const Settings& settings)
       wind_variance_m2ps2_(square(kWindSd_mps)),
       lap_distance_m_(std::numeric_limits<double>::quiet_NaN()) {}
 
+// In the middle of its lap.
 double Engine::mass_kg() const {
-    return car_.mass_kg.value - car_.fuel_per_lap_kg.value * std::max(lap_ - lap_first_, 0.0);
+    const double laps = have_lap_ ? std::max(lap_ - lap_first_, 0.0) + 0.5 : 0.0;
+    return car_.mass_kg.value - car_.fuel_per_lap_kg.value * laps;
 }
 
 double Engine::dynamic_pressure_pa() const {
@@ -51,7 +53,7 @@ double Engine::measured_pressure_pa() const {
 
 // Net force of the tyres along x: what accelerates the car and what the air takes.
 double Engine::tyre_force_x_n() const {
-    return mass_kg() * accel_x_mps2_ + dynamic_pressure_pa() * longitudinal_.filter().x[kDragArea];
+    return mass_kg() * accel_x_mps2_ + drag_n();
 }
 
 StepResult Engine::step(const Frame& frame) {
@@ -148,8 +150,7 @@ void Engine::find_brakes(const Frame& frame, std::uint64_t admitted) {
     if (has(admitted, Channel::brake_pressure))
         onset = brakes_.pressure(time_s, frame.get(Channel::brake_pressure));
     if (!onset && (has(admitted, Channel::accel_x) || (!have_accel_x_ && has(admitted, Channel::speed)))) {
-        const double drag = dynamic_pressure_pa() * longitudinal_.filter().x[kDragArea];
-        onset = brakes_.acceleration(time_s, accel_x_mps2_, -drag / mass_kg());
+        onset = brakes_.acceleration(time_s, accel_x_mps2_, -drag_n() / mass_kg());
     }
     if (brakes_.pressure_disagrees()) distrust(Channel::brake_pressure, Fault::disagrees);
     constexpr double kAlive_pa = 1e6;

@@ -96,6 +96,9 @@ class Engine {
     void collect();
     [[nodiscard]] double dynamic_pressure_pa() const;  // as the filters believe it
     [[nodiscard]] double measured_pressure_pa() const;
+    [[nodiscard]] LongitudinalFilter::DragInput drag_input() const;
+    [[nodiscard]] double pressure_for_drag_pa() const;  // before the longitudinal filter's own wind
+    [[nodiscard]] double drag_n() const;
     [[nodiscard]] double tyre_force_x_n() const;
     [[nodiscard]] double mass_kg() const;
     [[nodiscard]] AeroNow aero_now(double time_s) const;

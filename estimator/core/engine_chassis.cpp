@@ -112,7 +112,7 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
             bank.scale(kGust, kept.gust);
             bank.scale(kWindAlong, kept.wind_along);
         }
-        longitudinal_.drift(elapsed, 0.002);
+        longitudinal_.drift(elapsed, 0.002, !have_pitot_ && !have_heading_, turn_radps);
     }
     // Before the heights: what it measures is the balance of the step just predicted.
     if (heard(frame, admitted, Channel::accel_z)) fuse_accel_z(frame.get(Channel::accel_z));

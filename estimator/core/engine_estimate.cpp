@@ -125,7 +125,7 @@ const Estimate& Engine::estimate() {
     by_wind(kGust, 1.0);
     e.cda_m2 = longitudinal_.drag_area(dh_front, dh_rear, factor_rear * missing.share, missing.share_sd, q,
                                        mass_kg() * kGravity + q * (area_front + area_rear));
-    e.cda_m2.value *= wind_factor;
+    e.cda_m2.value *= pressure_for_drag_pa() / q;
     e.cda_m2.sd = std::hypot(e.cda_m2.sd, std::hypot(wind, kDragWhole) * e.cda_m2.value);
     e.attached = {std::clamp(1.0 - missing.share, 0.0, 1.0), missing.share_sd};
     e.downforce_front_n = {q * area_front, q * e.cla_front_m2.sd};

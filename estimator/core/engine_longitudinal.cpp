@@ -94,23 +94,13 @@ void Engine::step_longitudinal(const Frame& frame, std::uint64_t admitted, doubl
         drive_force_before_n_ = drive_force_n_;
         drive_force_n_ = frame.get(Channel::drive_force);
         const bool steady = std::abs(drive_force_n_ - drive_force_before_n_) < 0.03 * mass_kg() * kGravity;
-        const bool no_brakes =
-            !brakes_.braking() &&
-            accel_x_mps2_ >
-                -dynamic_pressure_pa() * longitudinal_.filter().x[kDragArea] / mass_kg() - kNoBrakes_mps2;
+        const bool no_brakes = !brakes_.braking() && accel_x_mps2_ > -drag_n() / mass_kg() - kNoBrakes_mps2;
         if (steady && no_brakes && accel_x_count_ > 0.0 && have_accel_x_ &&
             longitudinal_.speed_mps() > kDragFrom_mps && std::abs(accel_y_mps2_) < kStraight_mps2 &&
             !tracker_.bank().running()) {
-            LongitudinalFilter::DragInput in;
-            in.drive_force_n = drive_force_n_;
+            LongitudinalFilter::DragInput in = drag_input();
+            in.drive_force_n = 0.5 * (drive_force_before_n_ + drive_force_n_);
             in.accel_x_mps2 = accel_x_sum_ / accel_x_count_;
-            in.dynamic_pressure_pa = dynamic_pressure_pa();
-            in.dh_front_m = front_heights_.smooth_dh_m();
-            in.dh_rear_m = rear_heights_.smooth_dh_m();
-            in.missing = missing_open_ * chassis_.flap_height_factor(in.dh_rear_m);
-            in.downforce_n =
-                in.dynamic_pressure_pa * (chassis_.filter().x[kAreaFront] + chassis_.filter().x[kAreaRear]);
-            in.mass_kg = mass_kg();
             const double accel_sd = std::max(accel_noise, 0.05) / std::sqrt(accel_x_count_);
             in.noise_sd_n = std::hypot(in.mass_kg * accel_sd, std::max(0.10 * in.mass_kg * kGravity, 1.0));
             const double gate = usable(Channel::drive_force) ? kDragGate : 0.0;  // named: only looked at
@@ -123,6 +113,31 @@ void Engine::step_longitudinal(const Frame& frame, std::uint64_t admitted, doubl
         }
         accel_x_sum_ = accel_x_count_ = 0.0;
     }
+}
+
+// The air's part of the balance along x, and what the tyres carry, as it is now.
+LongitudinalFilter::DragInput Engine::drag_input() const {
+    LongitudinalFilter::DragInput in;
+    in.speed_mps = longitudinal_.speed_mps();
+    in.dynamic_pressure_pa = pressure_for_drag_pa();
+    in.dh_front_m = front_heights_.smooth_dh_m();
+    in.dh_rear_m = rear_heights_.smooth_dh_m();
+    in.missing = missing_open_ * chassis_.flap_height_factor(in.dh_rear_m);
+    in.mass_kg = mass_kg();
+    const double sprung_kg = chassis_.constants().sprung_mass_kg - (car_.mass_kg.value - in.mass_kg);
+    if (loads_known_) in.downforce_n = load_front_n_ + load_rear_n_ - sprung_kg * kGravity;
+    return in;
+}
+
+// Without pitot and course the vertical filter's wind is the one that makes its areas constant over speed,
+// and carries what is wrong with their slopes: the drag has a wind of its own. Gusts have no such mean.
+double Engine::pressure_for_drag_pa() const {
+    if (have_pitot_ || have_heading_) return dynamic_pressure_pa();
+    return measured_pressure_pa() * (1.0 + chassis_.filter().x[kGust]);
+}
+
+double Engine::drag_n() const {
+    return longitudinal_.air_force_n(drag_input());
 }
 
 void Engine::fuse_speed(double measured_mps, double since_s) {

@@ -11,13 +11,24 @@ namespace {
 
 constexpr double kDragAreaPrior_m2 = 1.2, kDragAreaPriorSd_m2 = 0.6;
 constexpr double kDragFlapPrior_m2 = 0.20, kDragFlapPriorSd_m2 = 0.15;
-constexpr double kDragSlopePriorSd_m = 4.0;
+// m^2/m: drag grows with the downforce as the car comes down (its induced part goes with the square of the
+// downforce area: order of magnitude).
+constexpr double kDragSlopePrior_m = -1.0, kDragSlopePriorSd_m = 1.2;
 constexpr double kSlipPrior = 0.005, kSlipPriorSd = 0.004;
 constexpr double kAccelOffsetSd_mps2 = 0.10;
 constexpr double kAccelGainSd = 0.007;
 constexpr double kDriveGainSd = 0.025;
 constexpr double kDragDrift_m2 = 0.002;  // after one second
 constexpr double kAccelOffsetDrift_mps2 = 0.001;
+constexpr double kWindPriorSd_mps = 2.0;  // common practice, no source
+constexpr double kWindDrift_mps = 0.10;
+constexpr double kTurnForgets_rad = 1.0;      // so much leaves 1/e of what was known of the wind
+constexpr double kWindLeastSpeed_mps = 15.0;  // below, the ratio would run away
+
+// Air speed over ground speed, [drag-wind].
+double air_share(double wind_mps, double speed_mps) {
+    return 1.0 + wind_mps / std::max(speed_mps, kWindLeastSpeed_mps);
+}
 
 }  // namespace
 
@@ -31,9 +42,11 @@ LongitudinalFilter::LongitudinalFilter(const Car& car) : rolling_resistance_(car
     variance[kAccelOffset] = square(kAccelOffsetSd_mps2);
     variance[kAccelGain] = square(kAccelGainSd);
     variance[kDriveGain] = square(kDriveGainSd);
+    variance[kWindUnseen] = square(kWindPriorSd_mps);
     filter_.set_diagonal(variance);
     filter_.x[kDragArea] = kDragAreaPrior_m2;
     filter_.x[kDragFlap] = kDragFlapPrior_m2;
+    filter_.x[kDragSlopeFront] = filter_.x[kDragSlopeRear] = kDragSlopePrior_m;
     filter_.x[kSlipDrive] = filter_.x[kSlipBrake] = kSlipPrior;
 }
 
@@ -48,7 +61,17 @@ void LongitudinalFilter::predict(double dt_s, double accel_x_mps2, double noise_
         noise_density * dt_s;  // speed is the first state: its own noise is its own diagonal
 }
 
-void LongitudinalFilter::drift(double elapsed_s, double common_share) {
+void LongitudinalFilter::drift(double elapsed_s, double common_share, bool wind_unseen, double turn_radps) {
+    if (wind_unseen) {
+        const double keep = std::exp(-elapsed_s * turn_radps / kTurnForgets_rad);
+        filter_.x[kWindUnseen] *= keep;
+        filter_.scale_state(kWindUnseen, keep);
+        filter_.add_noise(
+            kWindUnseen, square(kWindPriorSd_mps) * (1.0 - keep * keep) + square(kWindDrift_mps) * elapsed_s);
+    } else if (filter_.diagonal(kWindUnseen) > 0.0) {
+        filter_.x[kWindUnseen] = 0.0;
+        filter_.reset_state(kWindUnseen, 0.0);
+    }
     filter_.add_noise(kDragArea,
                       (square(kDragDrift_m2) + square(common_share * filter_.x[kDragArea])) * elapsed_s);
     filter_.add_noise(kAccelOffset, square(kAccelOffsetDrift_mps2) * elapsed_s);
@@ -68,12 +91,16 @@ LongitudinalFilter::Filter::Vector LongitudinalFilter::J_speed_state(const Filte
     return h;
 }
 
-LongitudinalFilter::Filter::Vector LongitudinalFilter::J_drag_state(const DragInput& in) {
+LongitudinalFilter::Filter::Vector LongitudinalFilter::J_drag_state(const Filter::Vector& x,
+                                                                    const DragInput& in) {
     Filter::Vector h{};
-    h[kDragArea] = in.dynamic_pressure_pa;
-    h[kDragFlap] = -in.dynamic_pressure_pa * in.missing;
-    h[kDragSlopeFront] = in.dynamic_pressure_pa * in.dh_front_m;
-    h[kDragSlopeRear] = in.dynamic_pressure_pa * in.dh_rear_m;
+    const double share = air_share(x[kWindUnseen], in.speed_mps);
+    const double q = in.dynamic_pressure_pa * square(share);
+    h[kDragArea] = q;
+    h[kDragFlap] = -q * in.missing;
+    h[kDragSlopeFront] = q * in.dh_front_m;
+    h[kDragSlopeRear] = q * in.dh_rear_m;
+    h[kWindUnseen] = 2.0 * air_force_n(x, in) / (share * std::max(in.speed_mps, kWindLeastSpeed_mps));
     h[kAccelOffset] = -in.mass_kg;
     h[kAccelGain] = -in.mass_kg * in.accel_x_mps2;
     h[kDriveGain] = in.drive_force_n;
@@ -91,10 +118,10 @@ Innovation<double> LongitudinalFilter::update_speed(double measured_mps, double 
     return out;
 }
 
-double LongitudinalFilter::air_force_n(const DragInput& in) const {
-    const auto& x = filter_.x;
-    return in.dynamic_pressure_pa * (x[kDragArea] - in.missing * x[kDragFlap] +
-                                     in.dh_front_m * x[kDragSlopeFront] + in.dh_rear_m * x[kDragSlopeRear]);
+double LongitudinalFilter::air_force_n(const Filter::Vector& x, const DragInput& in) {
+    return in.dynamic_pressure_pa * square(air_share(x[kWindUnseen], in.speed_mps)) *
+           (x[kDragArea] - in.missing * x[kDragFlap] + in.dh_front_m * x[kDragSlopeFront] +
+            in.dh_rear_m * x[kDragSlopeRear]);
 }
 
 Innovation<double> LongitudinalFilter::update_drag(const DragInput& in, double gate) {
@@ -103,10 +130,10 @@ Innovation<double> LongitudinalFilter::update_drag(const DragInput& in, double g
     // measurement's own noise, which would be taken for scale.
     DragInput expected = in;
     expected.accel_x_mps2 = (in.drive_force_n - rolling - air_force_n(in)) / in.mass_kg;
-    const auto h = J_drag_state(expected);
+    const auto h = J_drag_state(filter_.x, expected);
     const double left = in.drive_force_n - rolling - in.mass_kg * in.accel_x_mps2;
-    double predicted = 0.0;
-    for (std::size_t i = 0; i < kLongitudinalCount; ++i) predicted += h[i] * filter_.x[i];
+    double predicted = air_force_n(in);
+    for (const LongitudinalState i : {kAccelOffset, kAccelGain, kDriveGain}) predicted += h[i] * filter_.x[i];
     Innovation<double> out{left - predicted, 0.0};
     out.variance = filter_.expect(h, square(in.noise_sd_n));
     if (square(out.value) <= square(gate) * out.variance) filter_.apply(out.value);
@@ -117,15 +144,14 @@ Quantity LongitudinalFilter::drag_area(double dh_front_m, double dh_rear_m, doub
                                        double dynamic_pressure_pa, double vertical_force_n) const {
     DragInput unit;
     unit.dynamic_pressure_pa = 1.0;
+    unit.speed_mps = filter_.x[kSpeed];
     unit.dh_front_m = dh_front_m;
     unit.dh_rear_m = dh_rear_m;
     unit.missing = missing;
-    const auto h = J_drag_state(unit);
-    double area = 0.0;
-    for (std::size_t i = 0; i < kLongitudinalCount; ++i) area += h[i] * filter_.x[i];
+    const auto h = J_drag_state(filter_.x, unit);
     const double rolling_sd = rolling_resistance_.sd * vertical_force_n / std::max(dynamic_pressure_pa, 1.0);
     const double flap_sd = filter_.x[kDragFlap] * missing_sd;
-    return {area, std::sqrt(filter_.variance_of(h) + square(rolling_sd) + square(flap_sd))};
+    return {air_force_n(unit), std::sqrt(filter_.variance_of(h) + square(rolling_sd) + square(flap_sd))};
 }
 
 }  // namespace holdfast::core

@@ -20,6 +20,7 @@ enum LongitudinalState : std::size_t {
     kAccelOffset,     // m/s^2, measured minus true
     kAccelGain,       // relative error of the accelerometer's scale
     kDriveGain,       // relative error of the drive force
+    kWindUnseen,      // m/s, wind against the car where neither pitot nor course tells of it, else 0
     kLongitudinalCount,
 };
 
@@ -31,17 +32,19 @@ class LongitudinalFilter {
 
     // accel_x measured, m/s^2; noise_variance_rate its two-sided spectral density, (m/s^2)^2 s.
     void predict(double dt_s, double accel_x_mps2, double noise_density);
-    void drift(double elapsed_s, double common_share);
+    // Slow change over elapsed_s. wind_unseen: the wind is this filter's to find, and a turn makes it forget.
+    void drift(double elapsed_s, double common_share, bool wind_unseen, double turn_radps);
     void restart(double speed_mps);
 
     struct DragInput {
-        double drive_force_n = 0.0;
-        double accel_x_mps2 = 0.0;  // as measured, mean over the interval of the drive force
-        double dynamic_pressure_pa = 0.0;
+        double drive_force_n = 0.0;  // mean over its interval
+        double accel_x_mps2 = 0.0;   // as measured, mean over the same
+        double speed_mps = 0.0;
+        double dynamic_pressure_pa = 0.0;  // before kWindUnseen
         double dh_front_m = 0.0;
         double dh_rear_m = 0.0;
         double missing = 0.0;
-        double downforce_n = 0.0;
+        double downforce_n = 0.0;  // what the tyres carry beyond the weight
         double mass_kg = 0.0;
         double noise_sd_n = 0.0;
     };
@@ -57,17 +60,18 @@ class LongitudinalFilter {
     [[nodiscard]] double true_accel_mps2(double measured_mps2) const {
         return (measured_mps2 - filter_.x[kAccelOffset]) * (1.0 - filter_.x[kAccelGain]);
     }
-    // Drag area and its standard uncertainty now, rolling resistance's share included.
+    // Drag area and its standard uncertainty now, kWindUnseen and rolling resistance's share included.
     [[nodiscard]] Quantity drag_area(double dh_front_m, double dh_rear_m, double missing, double missing_sd,
                                      double dynamic_pressure_pa, double vertical_force_n) const;
     [[nodiscard]] Filter& filter() { return filter_; }
     [[nodiscard]] const Filter& filter() const { return filter_; }
     [[nodiscard]] static Filter::Vector J_speed_state(const Filter::Vector& x, double force_in_weights);
-    [[nodiscard]] static Filter::Vector J_drag_state(const DragInput& input);
+    [[nodiscard]] static Filter::Vector J_drag_state(const Filter::Vector& x, const DragInput& input);
+    // Air force along x as the filter believes it.
+    [[nodiscard]] double air_force_n(const DragInput& input) const { return air_force_n(filter_.x, input); }
+    [[nodiscard]] static double air_force_n(const Filter::Vector& x, const DragInput& input);
 
   private:
-    [[nodiscard]] double air_force_n(const DragInput& input) const;
-
     Filter filter_;
     Quantity rolling_resistance_;
 };

@@ -84,6 +84,7 @@ TEST_CASE("a step of the filter along the track carries the covariance as F P F^
         (void)filter.update_speed(60.0 + 1.1 * kDt_s * i, 4000.0, 7650.0, 0.05, 8.0);
         LongitudinalFilter::DragInput in{.drive_force_n = 4000.0,
                                          .accel_x_mps2 = 1.0,
+                                         .speed_mps = 60.0,
                                          .dynamic_pressure_pa = 2200.0,
                                          .dh_front_m = -0.01,
                                          .dh_rear_m = -0.02,

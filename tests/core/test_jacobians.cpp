@@ -85,6 +85,7 @@ TEST_CASE("Jacobian of the drag balance is that of [drag-balance] where the sens
     LongitudinalFilter::DragInput in;
     in.drive_force_n = 5200.0;
     in.accel_x_mps2 = 1.3;
+    in.speed_mps = 75.0;
     in.dynamic_pressure_pa = 3300.0;
     in.dh_front_m = -0.011;
     in.dh_rear_m = -0.019;
@@ -96,6 +97,7 @@ TEST_CASE("Jacobian of the drag balance is that of [drag-balance] where the sens
     x[kDragFlap] = 0.2;
     x[kDragSlopeFront] = 1.0;
     x[kDragSlopeRear] = -2.0;
+    x[kWindUnseen] = -2.5;
     LongitudinalFilter::Filter::Vector steps;
     steps.fill(1e-4);
     // The air's force less F / (1 + gain) - M (true acceleration) - rolling: zero where all is right.
@@ -103,7 +105,9 @@ TEST_CASE("Jacobian of the drag balance is that of [drag-balance] where the sens
         const double area = at[kDragArea] + at[kDragSlopeFront] * in.dh_front_m +
                             at[kDragSlopeRear] * in.dh_rear_m - at[kDragFlap] * in.missing;
         const double accel = (in.accel_x_mps2 - at[kAccelOffset]) * (1.0 - at[kAccelGain]);
-        return in.dynamic_pressure_pa * area - in.drive_force_n / (1.0 + at[kDriveGain]) + in.mass_kg * accel;
+        const double air_share = 1.0 + at[kWindUnseen] / in.speed_mps;
+        return in.dynamic_pressure_pa * air_share * air_share * area -
+               in.drive_force_n / (1.0 + at[kDriveGain]) + in.mass_kg * accel;
     };
-    check_jacobian(x, LongitudinalFilter::J_drag_state(in), steps, remainder);
+    check_jacobian(x, LongitudinalFilter::J_drag_state(x, in), steps, remainder);
 }

@@ -39,6 +39,7 @@ TEST_CASE("coast-down: the filter finds speed, drag area and the accelerometer's
     car.mass_kg = {kMass_kg, 0.0};
     car.rolling_resistance = {kF0_n / (kMass_kg * kGravity), 0.0};
     LongitudinalFilter filter(car);
+    filter.drift(0.0, 0.0, false, 0.0);  // still air
     filter.restart(kStart_mps);
     std::mt19937_64 random(3);
     std::normal_distribution<double> normal;
@@ -51,6 +52,7 @@ TEST_CASE("coast-down: the filter finds speed, drag area and the accelerometer's
                                   8.0);
         LongitudinalFilter::DragInput in;
         in.accel_x_mps2 = accel;
+        in.speed_mps = speed;
         in.dynamic_pressure_pa = 0.5 * kDensity * speed * speed;
         in.mass_kg = kMass_kg;
         in.noise_sd_n = kMass_kg * kAccelNoise;

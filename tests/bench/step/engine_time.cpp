@@ -120,7 +120,8 @@ void run_longitudinal(const OutingLog& log) {
         filter.predict(1.0 / 400.0, 0.0, 0.01);
         if (frame.has(Channel::speed)) (void)filter.update_speed(60.0, 0.0, 8000.0, 0.1, 8.0);
         if (frame.has(Channel::drive_force)) (void)filter.update_drag(drag, 4.0);
-        if (++frames % static_cast<int>(kDriftEvery) == 0) filter.drift(kDriftEvery / 400.0, 0.002);
+        if (++frames % static_cast<int>(kDriftEvery) == 0)
+            filter.drift(kDriftEvery / 400.0, 0.002, true, 0.0);
     }
 }
 
