@@ -152,11 +152,12 @@ void Engine::find_brakes(const Frame& frame, std::uint64_t admitted) {
     if (!onset && (has(admitted, Channel::accel_x) || (!have_accel_x_ && has(admitted, Channel::speed)))) {
         onset = brakes_.acceleration(time_s, accel_x_mps2_, -drag_n() / mass_kg());
     }
-    if (brakes_.pressure_disagrees()) distrust(Channel::brake_pressure, Fault::disagrees);
-    constexpr double kAlive_pa = 1e6;
-    if (brakes_.braking() && frame.has(Channel::brake_pressure) &&
-        frame.get(Channel::brake_pressure) > kAlive_pa) {
-        trust_again(Channel::brake_pressure, Fault::disagrees);
+    // At rest, and in slow corners, brakes may be held without a deceleration to show for it.
+    if (brakes_.pressure_disagrees() && longitudinal_.speed_mps() > kSlowFrom_mps)
+        distrust(Channel::brake_pressure, Fault::disagrees);
+    if (!usable(Channel::brake_pressure)) {
+        brakes_.pressure_lost();
+        reconsider_brake_pressure(frame);
     }
     if (!onset) return;
     const double distance = lap_distance_m_ - (time_s - *onset) * longitudinal_.speed_mps();
@@ -167,6 +168,17 @@ void Engine::find_brakes(const Frame& frame, std::uint64_t admitted) {
     }
     command_fell_unseen_ = false;
     tracker_.brakes(*onset, zone, distance, aero_now(time_s));
+}
+
+// A pressure that was named is believed again once it has been seen at rest with the brakes off and then high
+// with the brakes on.
+void Engine::reconsider_brake_pressure(const Frame& frame) {
+    constexpr double kRest_pa = 1e5, kAlive_pa = 1e6;
+    if (!frame.has(Channel::brake_pressure)) return;
+    const double pressure_pa = frame.get(Channel::brake_pressure);
+    if (!brakes_.braking()) brake_pressure_rests_ = pressure_pa < kRest_pa;
+    if (brakes_.braking() && brake_pressure_rests_ && pressure_pa > kAlive_pa)
+        trust_again(Channel::brake_pressure, Fault::disagrees);
 }
 
 void Engine::restart_motion(double time_s) {

@@ -26,6 +26,7 @@
 #include "estimator/core/road_tuning.hpp"
 #include "estimator/core/settings.hpp"
 #include "estimator/core/slow_snapshot.hpp"
+#include "estimator/core/speed_witness.hpp"
 #include "estimator/core/zones.hpp"
 #include "proto/vocabulary/frame.hpp"
 
@@ -82,7 +83,11 @@ class Engine {
                              const AxleLoads::Load& load);
     void fuse_accel_z(double measured_mps2);
     void fuse_speed(double measured_mps, double since_s);
+    void fuse_distance(double time_s, double distance_m);
     void reconsider_accel_x(const Frame& frame);
+    void reconsider_brake_pressure(const Frame& frame);
+    void fuse_pitot(double time_s, double measured_pa);
+    [[nodiscard]] bool pitot_jumps(double time_s, double beyond_ground_pa, double interval_s);
     void watch_pitot(double elapsed_s);
     [[nodiscard]] bool heard(const Frame& frame, std::uint64_t admitted, Channel c) const;
     void find_brakes(const Frame& frame, std::uint64_t admitted);
@@ -130,15 +135,27 @@ class Engine {
     bool have_accel_x_ = false;
     double slip_force_n_ = 0.0;  // tyre force along x as the slip follows it
     LongRefusal speed_refusal_{0.4, 0.5}, accel_x_refusal_{1.0, 3.0}, accel_z_refusal_{0.4, 20.0};
-    LongRefusal drag_refusal_{0.2, 5.0}, pitot_refusal_{0.3, 5.0}, pitot_jump_{0.06, 2.0};
-    bool pitot_seen_ = false;
-    double pitot_headwind_mps_ = 0.0;  // mean of late
+    LongRefusal drag_refusal_{0.7, 5.0}, pitot_refusal_{0.3, 5.0}, pitot_return_{0.3, 5.0};
+    double pitot_level_pa_ = 0.0;   // over the pressure of the ground speed, mean of late
+    double pitot_level_s_ = -10.0;  // source time of its newest sample
+    double pitot_held_s_ = 0.0;     // for so long its samples have been held back
     bool speed_was_lost_ = false;
     bool refused_by_drift_ = false;         // the speed left its prediction bit by bit
     double speed_innovation_before_ = 0.0;  // mean over the last tenth of a second
-    double last_speed_s_ = 0.0;             // source time at which a speed was last used
-    double accel_x_off_mps2_ = 0.0;         // named accelerometer less the speed's derivative
-    double drag_off_n_ = 0.0;               // mean residual of the drag balance
+    DistanceSpeed distance_speed_;
+    SpeedWitness speed_witness_;
+    double distance_used_s_ = -10.0;     // source time at which it last stood in for the speed
+    double speed_less_slip_mps_ = 0.0;   // newest of the sensor
+    bool speed_refused_lately_ = false;  // since the distance's last window
+    double last_speed_s_ = 0.0;          // source time at which a speed was last used
+    double accel_x_off_mps2_ = 0.0;      // named accelerometer less the speed's derivative
+    bool brake_pressure_rests_ = false;  // a named brake pressure reads nothing with the brakes off
+    double drag_off_n_ = 0.0;            // mean residual of the drag balance
+    double accel_z_level_mps2_ = 0.0;    // mean innovation of late
+    double accel_z_held_s_ = 0.0;        // for so long its samples have been held back
+    bool accel_z_settled_ = false;
+    double accel_z_mean_mps2_ = 0.0;  // mean innovation, samples held back too
+    double accel_z_off_s_ = 0.0;      // for so long it has been off
     PitotCalibration pitot_calibration_;
     double pitot_newest_pa_ = 0.0, pitot_off_ = 0.0;
     double speed_before_mps_ = 0.0, speed_time_s_ = 0.0;
@@ -157,7 +174,7 @@ class Engine {
     double next_drift_s_ = 0.0;
     double next_watch_s_ = 0.0, watched_s_ = 0.0;
     double yaw_rate_radps_ = 0.0;
-    LongRefusal sides_refusal_{0.1, 3.0};
+    LongRefusal sides_refusal_{0.1, 3.0}, sides_strain_{1.0, 3.0};
     double accel_y_sum_ = 0.0, accel_y_count_ = 0.0;  // since the watches last judged
     std::uint64_t sources_ = 0;                       // loads and heights that were usable at the last look
     double sources_changed_s_ = -10.0;

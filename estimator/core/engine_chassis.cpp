@@ -21,9 +21,13 @@ constexpr double kOpeningLag_chords =
     5.0;  // flow leaves the opening flap so fast; common practice, no source
 constexpr double kTransferMemory_s = 0.1;
 constexpr double kTransferUnsure = 0.03;
+constexpr double kAccelUnsure_mps2 = 0.3, kAccelUnsureBraking_mps2 = 8.0;
 constexpr double kWindMemory_s = 120.0;  // over which the strength of the wind against the car is averaged
 constexpr double kAccelZLess = 2.0;      // noise of accel_z over its white part
 constexpr double kAreaUnsure_m2 = 0.2;
+constexpr double kAccelZMean_s = 0.1, kAccelZOff_mps2 = 1.0, kAccelZOffFor_s = 0.3;
+constexpr double kAccelZLevel_s = 0.02, kAccelZJumped_s = 0.10;  // kerbs are shorter
+constexpr double kAccelZJump = 5.0, kAccelZJump_mps2 = 2.0;      // in noises, and at least
 
 }  // namespace
 
@@ -64,7 +68,13 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
     // Links, tyres and pitch do not carry the longitudinal transfer quite as modelled: an error that keeps
     // its sign for a while, in proportion to the transfer.
     const double transfer_n = chassis_.constants().transfer_per_accel_kg * accel_x_mps2_;
-    const double transfer_density = 2.0 * kTransferMemory_s * square(kTransferUnsure * transfer_n);
+    double transfer_density = 2.0 * kTransferMemory_s * square(kTransferUnsure * transfer_n);
+    if (!have_accel_x_) {
+        // The speed's derivative tells of an acceleration some hundredths of a second late.
+        const double unsure = brakes_.braking() ? kAccelUnsureBraking_mps2 : kAccelUnsure_mps2;
+        transfer_density +=
+            2.0 * kTransferMemory_s * square(chassis_.constants().transfer_per_accel_kg * unsure);
+    }
     in.load_noise_front_n2s += transfer_density;
     in.load_noise_rear_n2s += transfer_density;
     in.dynamic_pressure_pa = measured_pressure_pa();
@@ -197,10 +207,27 @@ void Engine::fuse_accel_z(double measured_mps2) {
     // Refused by its own noise: what it is trusted less for is what keeps its sign (offset, vibration).
     health.status.test_ratio = square(innovation.value) /
                                (square(gate) * (innovation.variance - square(kAccelZLess * sd) + square(sd)));
-    const bool use = health.status.test_ratio <= 1.0;
+    // The air forces change in some hundredths of a second, a sensor that jumps from one sample to the next:
+    // what leaves the innovations' mean of late at once is held back, and named when it lasts.
+    const double jump = std::abs(innovation.value - accel_z_level_mps2_);
+    const bool jumped = accel_z_settled_ && jump > std::max(kAccelZJump * sd, kAccelZJump_mps2);
+    accel_z_held_s_ = jumped ? accel_z_held_s_ + health.interval_s : 0.0;
+    if (!jumped)
+        accel_z_level_mps2_ +=
+            std::min(health.interval_s / kAccelZLevel_s, 1.0) * (innovation.value - accel_z_level_mps2_);
+    accel_z_settled_ = true;
+    const bool use = health.status.test_ratio <= 1.0 && !jumped;
     health.status.result = use ? FusionResult::used : FusionResult::gated;
-    accel_z_refusal_.add(!use, health.interval_s);
-    if (accel_z_refusal_.wrong() && health.trust == Trust::good) {
+    accel_z_mean_mps2_ +=
+        std::min(health.interval_s / kAccelZMean_s, 1.0) * (innovation.value - accel_z_mean_mps2_);
+    const bool flap_known =
+        !closing && usable(Channel::flap_position) && (missing_open_ < 0.01 || missing_open_ > 0.99);
+    const bool off = flap_known && std::abs(accel_z_mean_mps2_) > kAccelZOff_mps2;
+    accel_z_off_s_ = off ? accel_z_off_s_ + health.interval_s : 0.0;
+    accel_z_refusal_.add(!use || off, health.interval_s);
+    const bool wrong =
+        accel_z_refusal_.wrong() || accel_z_held_s_ > kAccelZJumped_s || accel_z_off_s_ > kAccelZOffFor_s;
+    if (wrong && health.trust == Trust::good) {
         distrust(Channel::accel_z, Fault::jumped);
         // What it has led the areas to is forgotten.
         filter.add_noise(kAreaFront, square(kAreaUnsure_m2));

@@ -56,7 +56,8 @@ Learned Engine::learned() const {
     out.accel_offset_mps2 = state(along, kAccelOffset);
     out.accel_gain = state(along, kAccelGain);
     out.drive_gain = state(along, kDriveGain);
-    if (pitot_seen_) out.pitot_scale = {pitot_calibration_.scale(), pitot_calibration_.scale_sd()};
+    if (intake_.health()[index(Channel::pitot_pressure)].samples > 0)
+        out.pitot_scale = {pitot_calibration_.scale(), pitot_calibration_.scale_sd()};
     return out;
 }
 

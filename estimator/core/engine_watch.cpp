@@ -9,25 +9,18 @@
 namespace holdfast::core {
 namespace {
 
-constexpr double kSpeedCoasts_s = 20.0;   // the accelerometer alone holds the speed for so long
-constexpr double kPitotOff_n = 300.0;     // and by so much more, for what the loads are off
-constexpr double kPitotLearned_s = 40.0;  // before, the areas are not known well enough to judge by
-constexpr double kPitotSettle_s = 0.5;
-constexpr double kPitotOff = 0.09;  // dynamic pressure against the downforce, relative
-constexpr double kPitotJumpFrom_mps = 35.0;
-constexpr double kPitotJump_mps =
-    7.5;  // the air speed leaves the speed over ground by so much at once: not wind
-constexpr double kPitotMean_s = 0.4;
+constexpr double kStrained = 0.6;        // of what breaks a relation
+constexpr double kSpeedCoasts_s = 20.0;  // the accelerometer alone holds the speed for so long
 
 }  // namespace
 
-// A channel named for having jumped is heard on, to notice that it is right again; its filter refuses what is
-// wrong.
+// A channel named for having jumped or drifted is heard on, to notice that it is right again; its filter
+// refuses what is wrong.
 bool Engine::heard(const Frame& frame, std::uint64_t admitted, Channel c) const {
     if (has(admitted, c)) return true;
     const ChannelHealth& h = intake_.health()[index(c)];
-    return h.trust == Trust::distrusted && h.fault == Fault::jumped && frame.has(c) &&
-           std::isfinite(frame.get(c));
+    const bool off = h.fault == Fault::jumped || h.fault == Fault::drifting;
+    return h.trust == Trust::distrusted && off && frame.has(c) && std::isfinite(frame.get(c));
 }
 
 void Engine::distrust(Channel c, Fault fault) {
@@ -71,12 +64,17 @@ void Engine::watch_sensors(const Frame& frame) {
     intake_.expire(frame.time_ns);
     HealthTable& health = intake_.health();
     const bool lateral_seen = accel_y_count_ > 0.0;
-    const bool lateral = lateral_seen && usable(Channel::accel_y);
+    // Where both axles' sides strain, it may be the lateral acceleration: no other is named by it meanwhile.
+    const bool both_strain =
+        front_watch_.sides().strain() > kStrained && rear_watch_.sides().strain() > kStrained;
+    const bool lateral = lateral_seen && usable(Channel::accel_y) && !both_strain;
     const double accel_y = lateral_seen ? accel_y_sum_ / accel_y_count_ : 0.0;
     accel_y_sum_ = accel_y_count_ = 0.0;
     // Both axles' sides at once: it is the lateral acceleration that both are compared with.
     if (lateral_seen) sides_refusal_.add(front_watch_.sides_broken() && rear_watch_.sides_broken(), elapsed);
+    if (lateral_seen) sides_strain_.add(both_strain, elapsed);
     if (sides_refusal_.wrong()) distrust(Channel::accel_y, Fault::jumped);
+    if (sides_strain_.wrong()) distrust(Channel::accel_y, Fault::jumped);
     if (sides_refusal_.right()) trust_again(Channel::accel_y, Fault::jumped);
     front_watch_.judge(elapsed, frame.time_ns, longitudinal_.speed_mps(), accel_y, lateral_seen, lateral,
                        health);
@@ -85,46 +83,6 @@ void Engine::watch_sensors(const Frame& frame) {
     watch_pitot(elapsed);
     watch_needed(frame.time_ns);
     tell_distrust(frame.time_ns);
-}
-
-// The pitot against the downforce that the loads show: both go with the square of the same air speed.
-void Engine::watch_pitot(double elapsed_s) {
-    const ChannelHealth& h = intake_.health()[index(Channel::pitot_pressure)];
-    if (h.samples > 100 && longitudinal_.speed_mps() > kPitotJumpFrom_mps) {
-        const double ground_pa = 0.5 * air_density_kgpm3_ * square(longitudinal_.speed_mps());
-        const double headwind =
-            longitudinal_.speed_mps() * (std::sqrt(std::max(pitot_newest_pa_, 0.0) / ground_pa) - 1.0);
-        if (pitot_seen_)
-            pitot_jump_.add(std::abs(headwind - pitot_headwind_mps_) > kPitotJump_mps, elapsed_s);
-        // While it is named, the mean stays what it was: the channel returns when it comes back to it.
-        if (!pitot_seen_) pitot_headwind_mps_ = headwind;
-        if (!pitot_jump_.wrong())
-            pitot_headwind_mps_ += std::min(elapsed_s / kPitotMean_s, 1.0) * (headwind - pitot_headwind_mps_);
-        pitot_seen_ = true;
-        if (pitot_jump_.wrong()) distrust(Channel::pitot_pressure, Fault::jumped);
-    }
-    const bool steady = longitudinal_.speed_mps() > 40.0 && !brakes_.braking() &&
-                        !tracker_.bank().running() && std::abs(accel_y_mps2_) < 8.0 &&
-                        (missing_open_ < 0.01 || missing_open_ > 0.99);
-    const bool learned = static_cast<double>(time_ns_) * 1e-9 > start_s_ + kPitotLearned_s;
-    if (h.samples == 0 || !steady || !converged() || !learned) return;
-    const auto& x = chassis_.filter().x;
-    const ChassisConstants& c = chassis_.constants();
-    const double measured_n = load_front_n_ + load_rear_n_ - c.weight_front_n - c.weight_rear_n -
-                              x[kLoadOffsetFront] - x[kLoadOffsetRear] +
-                              kGravity * (car_.mass_kg.value - mass_kg());
-    const double area =
-        x[kAreaFront] + x[kAreaRear] + x[kSlopeFront] * front_heights_.smooth_dh_m() +
-        x[kSlopeRear] * rear_heights_.smooth_dh_m() -
-        missing_open_ *
-            (x[kFlapAreaFront] + x[kFlapAreaRear] * chassis_.flap_height_factor(rear_heights_.smooth_dh_m()));
-    if (measured_n < 1000.0) return;
-    const double off = pitot_newest_pa_ / pitot_calibration_.scale() * area / measured_n - 1.0;
-    pitot_off_ += std::min(elapsed_s / kPitotSettle_s, 1.0) * (off - pitot_off_);
-    const double limit = kPitotOff + kPitotOff_n / measured_n;
-    pitot_refusal_.add(std::abs(pitot_off_) > limit || pitot_calibration_.broken(), elapsed_s);
-    if (pitot_refusal_.wrong()) distrust(Channel::pitot_pressure, Fault::jumped);
-    if (pitot_refusal_.right() && pitot_jump_.right()) trust_again(Channel::pitot_pressure, Fault::jumped);
 }
 
 // Data without which nothing can be said: an alarm when they stop, and "stale" until they come again.

@@ -118,6 +118,15 @@ Innovation<double> LongitudinalFilter::update_speed(double measured_mps, double 
     return out;
 }
 
+Innovation<double> LongitudinalFilter::update_true_speed(double innovation_mps, double noise_sd_mps,
+                                                         double gate) {
+    Filter::Vector h{};
+    h[kSpeed] = 1.0;
+    Innovation<double> out{innovation_mps, filter_.expect(h, square(noise_sd_mps))};
+    if (square(out.value) <= square(gate) * out.variance) filter_.apply(out.value);
+    return out;
+}
+
 double LongitudinalFilter::air_force_n(const Filter::Vector& x, const DragInput& in) {
     return in.dynamic_pressure_pa * square(air_share(x[kWindUnseen], in.speed_mps)) *
            (x[kDragArea] - in.missing * x[kDragFlap] + in.dh_front_m * x[kDragSlopeFront] +

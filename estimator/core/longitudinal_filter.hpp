@@ -52,6 +52,12 @@ class LongitudinalFilter {
     // update; used only where |innovation| <= gate standard deviations.
     Innovation<double> update_speed(double measured_mps, double tyre_force_n, double weight_n,
                                     double noise_sd_mps, double gate);
+    // The true speed itself, without slip: innovation against it, used as above.
+    Innovation<double> update_true_speed(double innovation_mps, double noise_sd_mps, double gate);
+    // What the slip makes of the true speed: measured over true.
+    [[nodiscard]] double slip_factor(double force_in_weights) const {
+        return 1.0 + filter_.x[force_in_weights >= 0.0 ? kSlipDrive : kSlipBrake] * force_in_weights;
+    }
     // Force balance along x when not braking.
     Innovation<double> update_drag(const DragInput& input, double gate);
 

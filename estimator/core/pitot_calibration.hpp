@@ -33,17 +33,19 @@ class PitotCalibration {
         const double share = 1.0 + (filter_.x[kNorth] * cosine + filter_.x[kEast] * sine) / speed_mps;
         const double predicted = filter_.x[kScale] * share * share;
         const double per_wind = 2.0 * filter_.x[kScale] * share / speed_mps;
-        off_ += std::min(interval_s / kSettle_s, 1.0) * (ratio - predicted - off_);
+        off_mps_ +=
+            std::min(interval_s / kSettle_s, 1.0) * (0.5 * speed_mps * (ratio - predicted) - off_mps_);
         // Gusts keep their sign for a second or two: one sample among many tells little.
         const double gust = 2.0 * kGust_mps / speed_mps;
         (void)filter_.expect({share * share, per_wind * cosine, per_wind * sine},
                              gust * gust * 2.0 * kGustTime_s / interval_s);
-        if (std::abs(off_) < kOff) filter_.apply(ratio - predicted);
+        if (!broken()) filter_.apply(ratio - predicted);
     }
     [[nodiscard]] double scale() const { return filter_.x[kScale]; }
     [[nodiscard]] double scale_sd() const { return std::sqrt(filter_.variance(kScale)); }
-    // The ratio has been away from what wind and scale explain for about a second.
-    [[nodiscard]] bool broken() const { return std::abs(off_) >= kOff; }
+    // The air speed has been away from what wind and scale explain for about a second, by more than gusts
+    // make.
+    [[nodiscard]] bool broken() const { return std::abs(off_mps_) >= kOff_mps; }
 
     static constexpr double kFrom_mps = 25.0;
 
@@ -54,10 +56,10 @@ class PitotCalibration {
     static constexpr double kWindDrift_mps = 0.05;
     static constexpr double kGust_mps = 0.7, kGustTime_s = 1.5;
     static constexpr double kSettle_s = 1.0;
-    static constexpr double kOff = 0.14;
+    static constexpr double kOff_mps = 4.5;
 
     UdFilter<double, 3> filter_;
-    double off_ = 0.0;
+    double off_mps_ = 0.0;
 };
 
 }  // namespace holdfast::core

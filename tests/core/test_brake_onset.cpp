@@ -58,7 +58,7 @@ TEST_CASE("without a brake pressure the deceleration beyond drag tells, seed 2")
             onsets.push_back(*onset);
     }
     REQUIRE(onsets.size() == 1);
-    CHECK(onsets[0] == Approx(2.0).margin(0.03));
+    CHECK(onsets[0] == Approx(2.0).margin(0.008));
     CHECK_FALSE(brakes.braking());
 }
 
@@ -66,4 +66,19 @@ TEST_CASE("where the pressure is logged the acceleration has no say") {
     BrakeOnset brakes;
     CHECK_FALSE(brakes.pressure(0.0, 0.0));
     for (int i = 1; i < 200; ++i) REQUIRE_FALSE(brakes.acceleration(0.0025 * i, -45.0, -8.0));
+}
+
+TEST_CASE("a pressure that says brakes while the car does not slow down disagrees after a second") {
+    BrakeOnset brakes;
+    constexpr double kDrag = -8.0;
+    int disagrees_at = 0;
+    for (int i = 1; i < 800 && disagrees_at == 0; ++i) {
+        const double time_s = 0.0025 * i;
+        (void)brakes.pressure(time_s, time_s < 0.5 ? kResting_pa : kResting_pa + 1e6);
+        (void)brakes.acceleration(time_s, kDrag, kDrag);
+        if (brakes.pressure_disagrees()) disagrees_at = i;
+    }
+    CHECK(0.0025 * disagrees_at == Approx(1.5).margin(0.02));
+    brakes.pressure_lost();
+    CHECK_FALSE(brakes.pressure_disagrees());
 }
