@@ -58,6 +58,7 @@ test('units, theme and large figures are switched by key and remembered', async 
   await page.keyboard.press('u');
   await stands(page, '#answers', '13 ± 7 lbf missing');
   await stands(page, '#regrowth', '206 mph');
+  await stands(page, '#alarms', '383 ± 39 lbf missing');
   await page.keyboard.press('d');
   await page.keyboard.press('d');
   assert.equal(await page.evaluate(() => document.documentElement.dataset.theme), 'dark');

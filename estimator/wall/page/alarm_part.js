@@ -3,7 +3,7 @@
 // of a burst the alarm that came first. Quiet when nothing is wrong.
 import {html} from "./svg.js";
 import {icon} from "./marks.js";
-import {clock} from "./units.js";
+import {clock, quantityText} from "./units.js";
 import {SEVERITIES} from "./words.js";
 import {chime} from "./sound.js";
 
@@ -48,12 +48,12 @@ export function alarmPart(wall, root) {
     document.title = waiting.length ? `(${waiting.length}) Holdfast` : 'Holdfast';
     const focused = /** @type {HTMLElement|null} */ (document.activeElement)?.dataset?.id;
     // Only what is new is added, so that it is said aloud once, and the focus stays where it is.
-    reconcile(list, open, (alarm) => item(alarm, burstLed(alarm, alarms)));
+    reconcile(list, open, (alarm) => item(inUnits(alarm, wall.preferences.units), burstLed(alarm, alarms)));
     if (focused && !list.contains(document.activeElement)) /** @type {HTMLElement|null} */ (list.querySelector('button[data-act="acknowledge"]') ?? root.parentElement)?.focus();
     const done = railOrder(alarms.filter((a) => a.acknowledged && !a.active)).sort((a, b) => b.t - a.t);
     past.hidden = done.length === 0;
     pastTitle.textContent = `${done.length} acknowledged and over`;
-    reconcile(pastList, done, (alarm) => html('li', {'data-key': key(alarm, 0)}, icon(alarm.severity), html('span', {}, `${clock(alarm.t)}  ${alarm.text}`)));
+    reconcile(pastList, done.map((alarm) => inUnits(alarm, wall.preferences.units)), (alarm) => html('li', {'data-key': key(alarm, 0)}, icon(alarm.severity), html('span', {}, `${clock(alarm.t)}  ${alarm.text}`)));
     const newest = Math.max(-1, ...alarms.map((a) => a.id));
     if (wall.preferences.sound && newestHeard >= 0 && newest > newestHeard) {
       const severe = waiting.filter((a) => a.id > newestHeard).some((a) => a.severity === 'high');
@@ -62,7 +62,13 @@ export function alarmPart(wall, root) {
     newestHeard = Math.max(0, newest);
   }
 
-  return {needs: ['hello', 'alarms', 'alarm', 'alarm_acknowledged'], draw};
+  return {needs: ['hello', 'alarms', 'alarm', 'alarm_acknowledged', 'preferences'], draw};
+}
+
+/** The program writes newtons; a viewer may like others. @param {Alarm} alarm @param {import('./units.js').UnitChoice} units @returns {Alarm} */
+function inUnits(alarm, units) {
+  const text = alarm.text.replace(/(\d+) ± (\d+) N\b/, (_, value, sd) => quantityText([Number(value), Number(sd)], units, 'force'));
+  return {...alarm, text};
 }
 
 /** @param {Alarm} alarm @param {number} followers */
