@@ -47,7 +47,7 @@ struct ChassisInput {
     double dh_front_m = 0.0;          // ride height less its static value: the areas depend on it
     double dh_rear_m = 0.0;
     double accel_x_mps2 = 0.0;
-    double tyre_force_x_n = 0.0;  // drive positive, brakes negative
+    double transfer_force_n = 0.0;  // along x, what the links carry their shares of; brakes negative
     double fuel_burnt_kg = 0.0;
     double missing = 0.0;  // share of the flap's downforce that is away, 0..1, as the base path takes it
     double road_front_m2ps = 0.0;  // spectral density of the road's vertical velocity, two-sided, m^2/s
@@ -76,13 +76,14 @@ class ChassisFilter {
 
     void predict(const ChassisInput& input);
 
-    // Slow change of areas, offsets and wind over elapsed_s. unseen_turn_radps: rate at which the car turns
-    // in the wind without the course being known; 0 where it is.
+    // Slow change of areas, offsets and wind over elapsed_s; accel_z_heard: its offset may drift.
+    // unseen_turn_radps: rate at which the car turns in the wind without the course being known; 0 where it
+    // is.
     struct Kept {  // by what the wind states were multiplied
         double gust = 1.0;
         double wind_along = 1.0;
     };
-    Kept drift(double elapsed_s, bool air_speed_measured, double unseen_turn_radps);
+    Kept drift(double elapsed_s, bool accel_z_heard, bool air_speed_measured, double unseen_turn_radps);
 
     // The air speed is measured after all: the wind states go, the gust state becomes the pitot's gain error.
     void wind_is_measured();

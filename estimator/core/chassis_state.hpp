@@ -17,8 +17,8 @@ enum ChassisState : std::size_t {
     kRoadRear,   // m
     kMovingCount,
     // What the car is: these move slowly.
-    kAreaFront =
-        kMovingCount,  // m^2, downforce area at the static ride height, flap closed and flow attached
+    kAccelZOffset = kMovingCount,  // m/s^2, measured minus true vertical acceleration
+    kAreaFront,        // m^2, downforce area at the static ride height, flap closed and flow attached
     kAreaRear,         // m^2
     kSlopeFront,       // m^2/m, change of the front area with the front ride height
     kSlopeRear,        // m^2/m

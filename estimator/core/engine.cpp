@@ -18,6 +18,7 @@ constexpr double kUnseenFor_s = 3.0;    // brakes within so much of a command be
 constexpr double kWindSd_mps = 2.0;     // wind that areas carry where air speed is not measured
 constexpr double kMostAccel_mps2 = 30.0;  // how far off the speed may be after a pause
 constexpr double kSlowFrom_mps = 20.0;
+constexpr double kDragInTransfer = 0.5;
 
 }  // namespace
 
@@ -54,6 +55,13 @@ double Engine::measured_pressure_pa() const {
 // Net force of the tyres along x: what accelerates the car and what the air takes.
 double Engine::tyre_force_x_n() const {
     return mass_kg() * accel_x_mps2_ + drag_n();
+}
+
+// What the links carry their shares of. A share of the load transfer: of the force that accelerates the car,
+// and of that which holds the air's too, as far as the air does not act at the height of the ground: half of
+// it is taken.
+double Engine::transfer_force_n() const {
+    return mass_kg() * accel_x_mps2_ + kDragInTransfer * drag_n();
 }
 
 StepResult Engine::step(const Frame& frame) {

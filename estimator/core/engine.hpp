@@ -105,6 +105,7 @@ class Engine {
     [[nodiscard]] double pressure_for_drag_pa() const;  // before the longitudinal filter's own wind
     [[nodiscard]] double drag_n() const;
     [[nodiscard]] double tyre_force_x_n() const;
+    [[nodiscard]] double transfer_force_n() const;
     [[nodiscard]] double mass_kg() const;
     [[nodiscard]] AeroNow aero_now(double time_s) const;
     [[nodiscard]] std::uint64_t sources() const;

@@ -84,7 +84,7 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
     in.dh_front_m = front_heights_.smooth_dh_m();
     in.dh_rear_m = rear_heights_.smooth_dh_m();
     in.accel_x_mps2 = longitudinal_.true_accel_mps2(accel_x_mps2_);
-    in.tyre_force_x_n = tyre_force_x_n();
+    in.transfer_force_n = transfer_force_n();
     in.fuel_burnt_kg = car_.mass_kg.value - mass_kg();
     in.road_front_m2ps = front_road_.density_m2ps(longitudinal_.speed_mps());
     in.road_rear_m2ps = rear_road_.density_m2ps(longitudinal_.speed_mps());
@@ -117,7 +117,7 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
         wind_variance_m2ps2_ +=
             elapsed / kWindMemory_s * (square(chassis_.headwind_mps()) - wind_variance_m2ps2_);
         const ChassisFilter::Kept kept =
-            chassis_.drift(elapsed, have_pitot_, have_heading_ ? 0.0 : turn_radps);
+            chassis_.drift(elapsed, usable(Channel::accel_z), have_pitot_, have_heading_ ? 0.0 : turn_radps);
         if (bank.running()) {
             bank.scale(kGust, kept.gust);
             bank.scale(kWindAlong, kept.wind_along);
@@ -196,7 +196,7 @@ void Engine::fuse_accel_z(double measured_mps2) {
     const ChassisStep& step = chassis_.last_step();
     const auto h = AccelZModel::J_accel_state(step);
     const double sd = std::max(intake_.noise_sd(Channel::accel_z), 0.05);
-    Innovation<double> innovation{measured_mps2 - AccelZModel::predict(step), 0.0};
+    Innovation<double> innovation{measured_mps2 - AccelZModel::predict(filter.x, step), 0.0};
     innovation.variance = filter.expect(h, square(kAccelZLess * sd));
     const bool closing = tracker_.bank().running();
     const double gate = closing ? kGateClosing : kGate;

@@ -9,7 +9,9 @@
 namespace holdfast::core {
 namespace {
 
-constexpr double kAccelZOffset_mps2 = 0.08;
+// Force of an axle in weights of the car that keeps its sign and that no state stands for (transfer, links,
+// hills); found on simulated cars by the bands' coverage.
+constexpr double kAxleForceLeft = 0.0055;
 constexpr double kSnapshotEvery_s = 1.0;
 constexpr double kLoadGainSd = 0.01;  // a load sensor's gain against the weight it was zeroed with
 constexpr double kDragWhole =
@@ -98,12 +100,10 @@ const Estimate& Engine::estimate() {
     };
     e.cla_front_m2 = {area_front, sd_of(front, area_front, front_ratio * missing.area_sd_m2)};
     e.cla_rear_m2 = {area_rear, sd_of(rear, area_rear, factor_rear * missing.area_sd_m2)};
-    // An offset of the vertical accelerometer, where it is fused, looks like downforce, half of it at each
-    // axle.
-    const double by_accel_z = usable(Channel::accel_z) ? 0.5 * kAccelZOffset_mps2 * mass_kg() / q : 0.0;
-    const double floor_variance = square(by_accel_z);
-    e.cla_front_m2.sd = std::hypot(e.cla_front_m2.sd, by_accel_z);
-    e.cla_rear_m2.sd = std::hypot(e.cla_rear_m2.sd, by_accel_z);
+    const double left_m2 = kAxleForceLeft * mass_kg() * kGravity / q;
+    const double floor_variance = square(left_m2);
+    e.cla_front_m2.sd = std::hypot(e.cla_front_m2.sd, left_m2);
+    e.cla_rear_m2.sd = std::hypot(e.cla_rear_m2.sd, left_m2);
     e.front_other_variance =
         floor_variance + square(whole * area_front) + square(front_ratio * missing.area_sd_m2);
     e.rear_other_variance =

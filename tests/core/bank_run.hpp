@@ -104,20 +104,20 @@ class BankRun {
         const auto h = core::AccelZModel::J_accel_state(at);
         if (truth_is_first_) {
             const core::ChassisStep& true_step = separate_.front().chassis.last_step();
-            measured = core::AccelZModel::predict(true_step) +
+            measured = core::AccelZModel::predict(separate_.front().chassis.filter().x, true_step) +
                        drawn(core::AccelZModel::J_accel_state(true_step), kVariance);
         }
         double reaction = h[core::kFlapAreaRear];
         for (std::size_t i = 0; i < core::kFlapAreaRear; ++i)
             reaction += h[i] * filter().column(core::kFlapAreaRear)[i];
-        const core::Innovation<double> innovation{measured - core::AccelZModel::predict(at),
+        const core::Innovation<double> innovation{measured - core::AccelZModel::predict(filter().x, at),
                                                   filter().expect(h, kVariance)};
         filter().apply(innovation.value);
         bank_->weigh(h, filter().gain(), innovation, reaction, at.heave_accel_per_missing_area);
         for (SeparateFilter& s : separate_) {
             const auto& own = s.chassis.last_step();
             update(s, core::AccelZModel::J_accel_state(own), kVariance,
-                   measured - core::AccelZModel::predict(own));
+                   measured - core::AccelZModel::predict(s.chassis.filter().x, own));
         }
     }
 

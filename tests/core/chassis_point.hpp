@@ -19,6 +19,7 @@ using ChassisVector = core::ChassisFilter::Filter::Vector;
     s[kHeaveRate] = 0.01;
     s[kPitch] = 5e-4;
     s[kPitchRate] = 5e-3;
+    s[kAccelZOffset] = 0.1;
     s[kAreaFront] = s[kAreaRear] = 0.1;
     s[kSlopeFront] = s[kSlopeRear] = 2.0;
     s[kTransferFront] = s[kTransferRear] = 0.03;

@@ -47,7 +47,7 @@ namespace holdfast::testing {
     in.dh_front_m = -0.012;
     in.dh_rear_m = -0.021;
     in.accel_x_mps2 = 2.0;
-    in.tyre_force_x_n = 6000.0;
+    in.transfer_force_n = 6000.0;
     in.fuel_burnt_kg = 3.0;
     in.missing = 0.6;
     in.road_front_m2ps = 2e-5;

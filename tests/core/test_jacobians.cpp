@@ -22,7 +22,7 @@ TEST_CASE("Jacobians of the vertical and the pitch acceleration, seeds 2 to 4") 
     SECTION("driving, part of the flow away, wind not measured") {}
     SECTION("braking hard") {
         in.accel_x_mps2 = -45.0;
-        in.tyre_force_x_n = -30000.0;
+        in.transfer_force_n = -30000.0;
     }
     SECTION("air speed measured, flow attached") {
         in.air_speed_measured = true;
@@ -42,7 +42,7 @@ TEST_CASE("Jacobians of the vertical and the pitch acceleration, seeds 2 to 4") 
         return other.last_step();
     };
     check_jacobian(chassis.filter().x, AccelZModel::J_accel_state(there.last_step()), steps,
-                   [&](const ChassisVector& x) { return AccelZModel::predict(moved(x)); });
+                   [&](const ChassisVector& x) { return AccelZModel::predict(x, moved(x)); });
     check_jacobian(chassis.filter().x, there.last_step().pitch_accel_by_state, steps,
                    [&](const ChassisVector& x) {
                        auto other = chassis;

@@ -11,9 +11,13 @@ namespace holdfast::core {
 struct AccelZModel {
     static constexpr double kGravity = 9.80665;
 
-    [[nodiscard]] static double predict(const ChassisStep& step) { return kGravity + step.heave_accel_mps2; }
+    [[nodiscard]] static double predict(const ChassisFilter::Filter::Vector& x, const ChassisStep& step) {
+        return kGravity + step.heave_accel_mps2 + x[kAccelZOffset];
+    }
     [[nodiscard]] static ChassisFilter::Filter::Vector J_accel_state(const ChassisStep& step) {
-        return step.heave_accel_by_state;
+        auto h = step.heave_accel_by_state;
+        h[kAccelZOffset] = 1.0;
+        return h;
     }
 };
 
