@@ -28,7 +28,8 @@ constexpr double kFlapPriorSd_m2 = 0.30;
 // Between a wing that does not feel the ground and one whose part of it scales with the whole.
 constexpr double kFlapSlopePrior_pm = -2.5, kFlapSlopePriorSd_pm = 2.0;
 constexpr double kFlapFrontPriorSd_m2 = 0.12;
-constexpr double kAccelZOffsetSd_mps2 = 0.1;    // common practice, no source
+// Less than such sensors have: with 0.1 a first closing is judged beside areas that still find their way.
+constexpr double kAccelZOffsetSd_mps2 = 0.03;
 constexpr double kLoadOffsetSensorSd_n = 60.0;  // an axle's two load sensors; common practice, no source
 
 // Drift of the parameters, standard deviation after one second.
@@ -37,7 +38,6 @@ constexpr double kWindDrift_mps = 0.10;
 constexpr double kTurnForgets_rad =
     1.0;                               // an unseen turn by so much leaves 1/e of what was known of the wind
 constexpr double kSlopeDrift_m = 0.7;  // m^2/m: the slope is not the same at every height
-constexpr double kAccelZOffsetDrift_mps2 = 0.001;
 constexpr double kLoadOffsetDrift_n = 0.5;
 constexpr double kFlapDrift_m2 = 0.0005;
 
@@ -216,7 +216,7 @@ void ChassisFilter::predict(const ChassisInput& in) {
     filter_.add_rank_one(std::array{0.0, 1.0 / mass, 0.0, b / inertia}, in.load_noise_rear_n2s * dt);
 }
 
-ChassisFilter::Kept ChassisFilter::drift(double elapsed_s, bool accel_z_heard, bool air_speed_measured,
+ChassisFilter::Kept ChassisFilter::drift(double elapsed_s, bool air_speed_measured,
                                          double unseen_turn_radps) {
     Kept kept;
     // From the last state to the first: each term's chain of divisions then runs in the shadow of the one
@@ -246,7 +246,6 @@ ChassisFilter::Kept ChassisFilter::drift(double elapsed_s, bool accel_z_heard, b
     filter_.add_noise(kSlopeFront, square(kSlopeDrift_m) * elapsed_s);
     filter_.add_noise(kAreaRear, square(kAreaDrift_m2) * elapsed_s);
     filter_.add_noise(kAreaFront, square(kAreaDrift_m2) * elapsed_s);
-    if (accel_z_heard) filter_.add_noise(kAccelZOffset, square(kAccelZOffsetDrift_mps2) * elapsed_s);
     return kept;
 }
 

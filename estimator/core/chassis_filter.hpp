@@ -76,14 +76,14 @@ class ChassisFilter {
 
     void predict(const ChassisInput& input);
 
-    // Slow change of areas, offsets and wind over elapsed_s; accel_z_heard: its offset may drift.
+    // Slow change of areas, offsets and wind over elapsed_s.
     // unseen_turn_radps: rate at which the car turns in the wind without the course being known; 0 where it
     // is.
     struct Kept {  // by what the wind states were multiplied
         double gust = 1.0;
         double wind_along = 1.0;
     };
-    Kept drift(double elapsed_s, bool accel_z_heard, bool air_speed_measured, double unseen_turn_radps);
+    Kept drift(double elapsed_s, bool air_speed_measured, double unseen_turn_radps);
 
     // The air speed is measured after all: the wind states go, the gust state becomes the pitot's gain error.
     void wind_is_measured();

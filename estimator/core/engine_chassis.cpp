@@ -117,7 +117,7 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
         wind_variance_m2ps2_ +=
             elapsed / kWindMemory_s * (square(chassis_.headwind_mps()) - wind_variance_m2ps2_);
         const ChassisFilter::Kept kept =
-            chassis_.drift(elapsed, usable(Channel::accel_z), have_pitot_, have_heading_ ? 0.0 : turn_radps);
+            chassis_.drift(elapsed, have_pitot_, have_heading_ ? 0.0 : turn_radps);
         if (bank.running()) {
             bank.scale(kGust, kept.gust);
             bank.scale(kWindAlong, kept.wind_along);

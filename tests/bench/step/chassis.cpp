@@ -18,8 +18,7 @@ class Chassis : public ComparedFilter {
     }
     void step(const ModelStep& step) override {
         chassis_.predict(step.input);
-        if (drift_ && ++count_ % kDriftEvery == 0)
-            chassis_.drift(kDriftEvery * step.input.dt_s, true, false, 0.0);
+        if (drift_ && ++count_ % kDriftEvery == 0) chassis_.drift(kDriftEvery * step.input.dt_s, false, 0.0);
         auto& filter = chassis_.filter();
         for (std::size_t i = 0; i < model_.measurements.size(); ++i) {
             const MeasurementModel& m = model_.measurements[i];
