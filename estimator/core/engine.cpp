@@ -19,6 +19,7 @@ constexpr double kWindSd_mps = 2.0;     // wind that areas carry where air speed
 constexpr double kMostAccel_mps2 = 30.0;  // how far off the speed may be after a pause
 constexpr double kSlowFrom_mps = 20.0;
 constexpr double kDragInTransfer = 0.5;
+constexpr double kTurned_rad = 0.15;  // the car has turned by more than any course rounds away
 
 }  // namespace
 
@@ -26,6 +27,8 @@ Engine::Engine(const Car& car, const Settings& settings)
     : car_(car),
       settings_(settings),
       longitudinal_(car),
+      longitudinal_newer_(car),
+      longitudinal_older_(car),
       chassis_(car),
       front_heights_(car, false),
       rear_heights_(car, true),
@@ -85,10 +88,7 @@ StepResult Engine::step(const Frame& frame) {
     }
     const double step_s = std::min(dt_s, kGapRestart_s);
     step_longitudinal(frame, admitted, step_s);
-    if (has(admitted, Channel::heading)) {
-        course_rad_ = frame.get(Channel::heading);
-        have_heading_ = true;
-    }
+    follow_heading(frame, admitted, step_s);
     find_brakes(frame, admitted);
     step_flap(frame, admitted);
     step_chassis(frame, admitted, step_s);
@@ -127,19 +127,66 @@ void Engine::note_slow_channels(const Frame& frame, std::uint64_t admitted) {
     }
 }
 
+// The course over ground. One that stands still while the car turns is stuck; without it the wind's direction
+// is forgotten turn by turn.
+void Engine::follow_heading(const Frame& frame, std::uint64_t admitted, double dt_s) {
+    if (frame.has(Channel::heading)) {
+        if (frame.get(Channel::heading) != heading_before_rad_) turned_since_rad_ = 0.0;
+        heading_before_rad_ = frame.get(Channel::heading);
+        turned_since_rad_ += dt_s * accel_y_mps2_ / std::max(longitudinal_.speed_mps(), 10.0);
+        if (std::abs(turned_since_rad_) > kTurned_rad) distrust(Channel::heading, Fault::stuck);
+    }
+    have_heading_ = usable(Channel::heading);
+    if (has(admitted, Channel::heading) && have_heading_) course_rad_ = frame.get(Channel::heading);
+}
+
 void Engine::step_flap(const Frame& frame, std::uint64_t admitted) {
     const double time_s = frame.time_s();
     if (has(admitted, Channel::flap_command)) {
         const double asked = frame.get(Channel::flap_command);
-        if (flap_.asked_open() && asked < 0.5 && !usable(Channel::flap_position)) {
+        if (flap_.asked_open() && asked < 0.5 && !usable(Channel::flap_position) && !flap_stands_in()) {
             command_fell_unseen_ = true;
             command_fell_s_ = time_s;
         }
         flap_.command(time_s, asked);
+        flap_stand_in_.command(time_s, asked > 0.5);
     }
-    if (!has(admitted, Channel::flap_position)) return;
-    const FlapMotion::Step step = flap_.position(time_s, frame.get(Channel::flap_position));
-    tracker_.flap_moved(time_s, frame.get(Channel::flap_position));
+    if (has(admitted, Channel::flap_position)) {
+        flap_stood_in_ = false;
+        const double position = frame.get(Channel::flap_position);
+        flap_stand_in_.learn(time_s, position);
+        follow_flap(time_s, position);
+        judge_flap_zero();
+    } else if (flap_stands_in()) {
+        flap_stood_in_ = true;
+        follow_flap(time_s, flap_stand_in_.position(time_s));
+    }
+}
+
+// A zero that has moved is told, and taken out; one that has moved far is not to be trusted.
+void Engine::judge_flap_zero() {
+    constexpr double kMoved = 0.05, kMovedFar = 0.25;
+    ChannelHealth& h = intake_.health()[index(Channel::flap_position)];
+    const double zero = std::abs(flap_.zero());
+    if (zero > kMovedFar) {
+        h.fault = Fault::none;
+        distrust(Channel::flap_position, Fault::drifting);
+    } else if (zero > kMoved && h.trust == Trust::good && h.fault == Fault::none) {
+        h.fault = Fault::drifting;
+        h.since_ns = time_ns_;
+    } else if (zero < 0.5 * kMoved && h.trust == Trust::good && h.fault == Fault::drifting) {
+        h.fault = Fault::none;
+    }
+}
+
+bool Engine::flap_stands_in() const {
+    return intake_.health()[index(Channel::flap_position)].samples > 0 && !usable(Channel::flap_position) &&
+           usable(Channel::flap_command) && flap_stand_in_.known();
+}
+
+void Engine::follow_flap(double time_s, double position) {
+    const FlapMotion::Step step = flap_.position(time_s, position);
+    tracker_.flap_moved(time_s, flap_.position_now());
     const double colour = std::max(front_road_.colour(), rear_road_.colour());
     if (step.closing_began) {
         tracker_.end(aero_now(time_s), colour, chassis_.filter(), false);
@@ -229,7 +276,7 @@ AeroNow Engine::aero_now(double time_s) const {
     now.rear_area_attached_m2 = x[kAreaRear] + x[kSlopeRear] * dh_rear;
     now.rear_area_sd_m2 = std::sqrt(chassis_.filter().variance(kAreaRear));
     now.lap = static_cast<std::int32_t>(std::lround(lap_));
-    now.reliable = loads_known_ && heights_known_ && stale_ == 0 && converged() &&
+    now.reliable = loads_known_ && heights_known_ && stale_ == 0 && converged() && !flap_stood_in_ &&
                    time_s > sources_changed_s_ + kSettleAfterChange_s;
     return now;
 }

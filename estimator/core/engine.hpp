@@ -17,6 +17,7 @@
 #include "estimator/core/closure_tracker.hpp"
 #include "estimator/core/fixed_queue.hpp"
 #include "estimator/core/flap_motion.hpp"
+#include "estimator/core/flap_stand_in.hpp"
 #include "estimator/core/intake.hpp"
 #include "estimator/core/learned.hpp"
 #include "estimator/core/long_refusal.hpp"
@@ -75,7 +76,11 @@ class Engine {
   private:
     void note_slow_channels(const Frame& frame, std::uint64_t admitted);
     void step_longitudinal(const Frame& frame, std::uint64_t admitted, double dt_s);
+    void follow_heading(const Frame& frame, std::uint64_t admitted, double dt_s);
     void step_flap(const Frame& frame, std::uint64_t admitted);
+    void follow_flap(double time_s, double position);
+    void judge_flap_zero();
+    [[nodiscard]] bool flap_stands_in() const;
     void step_chassis(const Frame& frame, std::uint64_t admitted, double dt_s);
     void fuse_height(AxleHeights& heights, RoadTuning& tuning, ChassisState road, const Frame& frame,
                      std::uint64_t admitted, double roll_rad);
@@ -84,6 +89,8 @@ class Engine {
     void fuse_accel_z(double measured_mps2);
     void fuse_speed(double measured_mps, double since_s);
     void fuse_distance(double time_s, double distance_m);
+    void keep_longitudinal(double time_s, bool calm);
+    void back_to_older_longitudinal();
     void reconsider_accel_x(const Frame& frame);
     void reconsider_brake_pressure(const Frame& frame);
     void fuse_pitot(double time_s, double measured_pa);
@@ -114,7 +121,8 @@ class Engine {
     Car car_;
     Settings settings_;
     Intake intake_;
-    LongitudinalFilter longitudinal_;
+    LongitudinalFilter longitudinal_, longitudinal_newer_, longitudinal_older_;
+    double next_keep_s_ = 0.0;
     ChassisFilter chassis_;
     AxleHeights front_heights_, rear_heights_;
     AxleLoads front_loads_{Channel::load_fl, Channel::load_fr};
@@ -123,6 +131,8 @@ class Engine {
     ChassisCompliance compliance_;
     RoadTuning front_road_, rear_road_;
     FlapMotion flap_;
+    FlapStandIn flap_stand_in_;
+    bool flap_stood_in_ = false;
     BrakeOnset brakes_;
     Zones zones_;
     ClosureTracker tracker_;
@@ -137,6 +147,11 @@ class Engine {
     double slip_force_n_ = 0.0;  // tyre force along x as the slip follows it
     LongRefusal speed_refusal_{0.4, 0.5}, accel_x_refusal_{1.0, 3.0}, accel_z_refusal_{0.4, 20.0};
     LongRefusal drag_refusal_{0.7, 5.0}, pitot_refusal_{0.3, 5.0}, pitot_return_{0.3, 5.0};
+    LongRefusal pitot_drift_{0.3, 5.0};
+    // For so long after the pitot was lost the wind is learned anew, and no sensor is named for the air's
+    // forces.
+    static constexpr double kForcesSettle_s = 20.0;
+    double forces_unsure_s_ = -kForcesSettle_s;
     double pitot_level_pa_ = 0.0;   // over the pressure of the ground speed, mean of late
     double pitot_level_s_ = -10.0;  // source time of its newest sample
     double pitot_held_s_ = 0.0;     // for so long its samples have been held back
@@ -167,6 +182,8 @@ class Engine {
     bool have_pitot_ = false;
     double course_rad_ = 0.0;  // clockwise from north; 0 where the heading is not logged
     bool have_heading_ = false;
+    double heading_before_rad_ = 0.0;
+    double turned_since_rad_ = 0.0;  // by the lateral acceleration, since the heading last changed
     double lap_ = 0.0, lap_first_ = 0.0, lap_distance_m_;
     bool have_lap_ = false;
     double load_front_n_ = 0.0, load_rear_n_ = 0.0;

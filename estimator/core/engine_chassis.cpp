@@ -220,9 +220,12 @@ void Engine::fuse_accel_z(double measured_mps2) {
     health.status.result = use ? FusionResult::used : FusionResult::gated;
     accel_z_mean_mps2_ +=
         std::min(health.interval_s / kAccelZMean_s, 1.0) * (innovation.value - accel_z_mean_mps2_);
-    const bool flap_known =
-        !closing && usable(Channel::flap_position) && (missing_open_ < 0.01 || missing_open_ > 0.99);
-    const bool off = flap_known && std::abs(accel_z_mean_mps2_) > kAccelZOff_mps2;
+    const bool air_known = static_cast<double>(time_ns_) * 1e-9 > forces_unsure_s_ + kForcesSettle_s &&
+                           !(have_pitot_ && pitot_calibration_.suspect());
+    const bool forces_known = air_known && !closing && usable(Channel::flap_position) &&
+                              (missing_open_ < 0.01 || missing_open_ > 0.99);
+    const double state_sd = std::sqrt(std::max(innovation.variance - square(kAccelZLess * sd), 0.0));
+    const bool off = forces_known && std::abs(accel_z_mean_mps2_) > kAccelZOff_mps2 + 3.0 * state_sd;
     accel_z_off_s_ = off ? accel_z_off_s_ + health.interval_s : 0.0;
     accel_z_refusal_.add(!use || off, health.interval_s);
     const bool wrong =

@@ -15,6 +15,8 @@ constexpr double kDerivative_s = 0.05;      // the speed's derivative is smoothe
 constexpr double kDerivativeSd_mps2 = 3.0;  // its error keeps its sign over several samples
 constexpr double kDragSettle_s = 0.4;       // drive force: mean residual over so long
 constexpr double kDragOff = 0.13;           // beyond so many weights it is wrong
+constexpr double kDragWind = 0.22;          // and, where the wind is not measured, beyond so much of the drag
+constexpr double kKeepEvery_s = 10.0;
 constexpr double kNoBrakes_mps2 = 2.5;  // decelerating by no more than this beyond drag: the brakes are off
 constexpr double kDragGate = 4.0;
 constexpr double kDragFrom_mps = 30.0;  // below, drag drowns in the other forces
@@ -74,11 +76,22 @@ void Engine::step_longitudinal(const Frame& frame, std::uint64_t admitted, doubl
                 have_accel_x_ ? std::max(accel_noise, 0.05) / std::sqrt(accel_x_count_) : kDerivativeSd_mps2;
             in.noise_sd_n = std::hypot(in.mass_kg * accel_sd, std::max(0.10 * in.mass_kg * kGravity, 1.0));
             const double gate = usable(Channel::drive_force) ? kDragGate : 0.0;  // named: only looked at
-            const auto innovation = longitudinal_.update_drag(in, gate);
+            (void)longitudinal_.update_drag(in, gate);
             const double interval = std::max(intake_.health()[index(Channel::drive_force)].interval_s, 1e-3);
-            drag_off_n_ += std::min(interval / kDragSettle_s, 1.0) * (innovation.value - drag_off_n_);
-            drag_refusal_.add(std::abs(drag_off_n_) > kDragOff * in.mass_kg * kGravity, interval);
-            if (drag_refusal_.wrong()) distrust(Channel::drive_force, Fault::jumped);
+            // A force or an acceleration that drifts is followed by the drag: held against the filter of ten
+            // to twenty seconds ago it stands out. The wind may have turned since.
+            const auto off = longitudinal_older_.update_drag(in, 0.0);
+            drag_off_n_ += std::min(interval / kDragSettle_s, 1.0) * (off.value - drag_off_n_);
+            const double state_sd_n = std::sqrt(std::max(off.variance - square(in.noise_sd_n), 0.0));
+            const double limit_n = kDragOff * in.mass_kg * kGravity + 2.0 * state_sd_n +
+                                   (have_pitot_ ? 0.0 : kDragWind * drag_n());
+            drag_refusal_.add(std::abs(drag_off_n_) > limit_n, interval);
+            keep_longitudinal(time_s, std::abs(drag_off_n_) < 0.5 * limit_n);
+            if (drag_refusal_.wrong() && time_s > forces_unsure_s_ + kForcesSettle_s &&
+                usable(Channel::drive_force)) {
+                distrust(Channel::drive_force, Fault::jumped);
+                back_to_older_longitudinal();
+            }
             if (drag_refusal_.right()) trust_again(Channel::drive_force, Fault::jumped);
         }
         accel_x_sum_ = accel_x_count_ = 0.0;
@@ -108,6 +121,21 @@ double Engine::pressure_for_drag_pa() const {
 
 double Engine::drag_n() const {
     return longitudinal_.air_force_n(drag_input());
+}
+
+// Two copies of the filter along the track, at least one of them from before a fault that is being followed.
+void Engine::keep_longitudinal(double time_s, bool calm) {
+    if (time_s < next_keep_s_ || !calm || !usable(Channel::drive_force)) return;
+    next_keep_s_ = time_s + kKeepEvery_s;
+    longitudinal_older_ = longitudinal_newer_;
+    longitudinal_newer_ = longitudinal_;
+}
+
+// What a wrong sensor has taught is forgotten; the speed goes on.
+void Engine::back_to_older_longitudinal() {
+    const double speed_mps = longitudinal_.speed_mps();
+    longitudinal_ = longitudinal_newer_ = longitudinal_older_;
+    longitudinal_.restart(speed_mps);
 }
 
 }  // namespace holdfast::core

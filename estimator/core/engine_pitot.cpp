@@ -19,6 +19,7 @@ constexpr double kJumped_s = 0.04;
 constexpr std::uint64_t kSettledAfter = 100;  // samples; its noise is known then
 constexpr double kLevelHolds_s = 2.0;         // without samples; the wind may turn with the car
 constexpr double kLearned_s = 40.0;           // before, the areas are not known well enough to judge by
+constexpr double kFast_mps = 40.0;            // it is watched from here on
 constexpr double kSettle_s = 0.5;
 // Dynamic pressure against the downforce: off by more than a gust of so much makes, and than the loads are
 // off.
@@ -74,9 +75,14 @@ void Engine::watch_pitot(double elapsed_s) {
         have_pitot_ = false;
         pitot_ratio_ = 1.0;
         chassis_.wind_is_unknown();
+        forces_unsure_s_ = static_cast<double>(time_ns_) * 1e-9;
     }
     const ChannelHealth& h = intake_.health()[index(Channel::pitot_pressure)];
-    const bool steady = longitudinal_.speed_mps() > 40.0 && !brakes_.braking() &&
+    if (have_pitot_) {
+        pitot_drift_.add(pitot_calibration_.broken(), elapsed_s);
+        if (pitot_drift_.wrong()) distrust(Channel::pitot_pressure, Fault::jumped);
+    }
+    const bool steady = longitudinal_.speed_mps() > kFast_mps && !brakes_.braking() &&
                         !tracker_.bank().running() && std::abs(accel_y_mps2_) < 8.0 &&
                         usable(Channel::flap_position) && (missing_open_ < 0.01 || missing_open_ > 0.99);
     const bool learned = static_cast<double>(time_ns_) * 1e-9 > start_s_ + kLearned_s;

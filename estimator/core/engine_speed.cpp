@@ -21,7 +21,6 @@ constexpr double kInnovationMemory_s = 0.1;
 constexpr double kReconsider_s = 1.0;
 constexpr double kAccelAgrees_mps2 = 1.0;
 constexpr double kDistanceGate = 6.0;
-constexpr double kDragUnsure_m2 = 0.2;
 constexpr double kAccelOffsetUnsure_mps2 = 0.3;  // that a drifting speed may have taught
 
 }  // namespace
@@ -62,9 +61,8 @@ void Engine::fuse_speed(double measured_mps, double since_s) {
             refused_by_drift_ = std::abs(speed_innovation_before_) > 0.3 * std::abs(innovation.value);
         if (speed_refusal_.wrong() && refused_by_drift_ && have_accel_x_ && !named) {
             distrust(Channel::accel_x, Fault::jumped);
-            // What it has led the drag to is forgotten.
-            longitudinal_.filter().add_noise(kAccelOffset, square(kAccelOffsetUnsure_mps2));
-            longitudinal_.filter().add_noise(kDragArea, square(kDragUnsure_m2));
+            back_to_older_longitudinal();
+            forces_unsure_s_ = static_cast<double>(time_ns_) * 1e-9;
             longitudinal_.restart(measured_mps);
             speed_refusal_.clear();
         } else if (speed_refusal_.wrong()) {

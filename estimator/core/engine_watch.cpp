@@ -102,7 +102,7 @@ void Engine::watch_needed(std::int64_t time_ns) {
         time_s < start_s_ + settings_.stale_s;  // channels have their first sample when their turn comes
     const bool speed_held = have_accel_x_ && time_s - last_speed_s_ < kSpeedCoasts_s;
     watch(Channel::speed, early || usable(Channel::speed) || speed_held);
-    watch(Channel::flap_position, early || usable(Channel::flap_position));
+    watch(Channel::flap_position, early || usable(Channel::flap_position) || flap_stands_in());
     watch(Channel::load_fl, early || front_load || front_height);
     watch(Channel::load_rl, early || rear_load || rear_height);
     const std::uint64_t now = sources();
@@ -115,7 +115,8 @@ void Engine::tell_distrust(std::int64_t time_ns) {
     for (std::size_t i = 0; i < kChannelCount; ++i) {
         const std::uint64_t bit = std::uint64_t{1} << i;
         const ChannelHealth& h = intake_.health()[i];
-        const bool bad = h.trust == Trust::distrusted || h.fault == Fault::noisy;
+        const bool bad =
+            h.trust == Trust::distrusted || h.fault == Fault::noisy || h.fault == Fault::drifting;
         if (bad && (told_ & bit) == 0) {
             alarms_.push(Alarm{AlarmKind::sensor_distrusted, time_ns, 0, static_cast<Channel>(i), 1.0, {}});
         }

@@ -17,6 +17,9 @@ constexpr double kStandsFor_s = 0.06;
 constexpr double kFitNoise = 0.001;      // scatter below which two fits are equally good
 constexpr double kEasesIn = -0.1;        // log of the fits' scatters, eased over straight
 constexpr double kActuatorMemory = 0.5;  // weight of the newest closing: an actuator keeps its manner
+constexpr double kAtRestAfter_s = 1.5;   // longer than a flap takes to shut
+constexpr double kZero_s = 0.3;          // the zero's mean is over so long
+constexpr double kMostZero = 0.5;
 constexpr double kEndAhead_s = 0.04;
 
 }  // namespace
@@ -27,6 +30,7 @@ void FlapMotion::command(double time_s, double value) {
         command_fell_ = true;
         time_command_s_ = time_s;
     }
+    if (asked != commanded_) time_asked_s_ = time_s;
     have_command_ = true;
     commanded_ = asked;
 }
@@ -53,8 +57,17 @@ double FlapMotion::end_of_travel_s(double time_s) {
     return std::clamp(zero, before_time_s_, time_s + kEndAhead_s);
 }
 
-FlapMotion::Step FlapMotion::position(double time_s, double value) {
+// With a command at hand, what the sensor reads when the flap has long been asked to be shut is its zero.
+double FlapMotion::less_zero(double time_s, double read) {
+    const bool long_shut = have_command_ && commanded_ < 0.5 && phase_ == FlapPhase::closed &&
+                           time_s > time_asked_s_ + kAtRestAfter_s && read < kMostZero;
+    if (long_shut) zero_ += std::clamp((time_s - before_time_s_) / kZero_s, 0.0, 1.0) * (read - zero_);
+    return read - zero_;
+}
+
+FlapMotion::Step FlapMotion::position(double time_s, double read) {
     Step step;
+    const double value = less_zero(time_s, read);
     position_ = value;
     const auto begin_closing = [&] {
         phase_ = FlapPhase::closing;
@@ -66,7 +79,10 @@ FlapMotion::Step FlapMotion::position(double time_s, double value) {
     };
     switch (phase_) {
         case FlapPhase::closed:
-            if (value > std::max(kLeftClosed, lowest_ + kLeftClosed)) phase_ = FlapPhase::opening;
+            // Not asked to open, it is the sensor that has moved, unless it moves far.
+            if (value > std::max(kLeftClosed, lowest_ + kLeftClosed) &&
+                (!have_command_ || commanded_ > 0.5 || value > kMostZero))
+                phase_ = FlapPhase::opening;
             command_fell_ = false;
             break;
         case FlapPhase::opening:

@@ -19,16 +19,18 @@ class FlapMotion {
         bool reopened = false;       // a closing was given up before the flap was shut
     };
     void command(double time_s, double value);
-    [[nodiscard]] Step position(double time_s, double value);
+    [[nodiscard]] Step position(double time_s, double read);
 
     [[nodiscard]] FlapPhase phase() const { return phase_; }
     [[nodiscard]] bool asked_open() const { return commanded_ > 0.5; }
-    [[nodiscard]] double position_now() const { return position_; }
+    [[nodiscard]] double position_now() const { return position_; }  // the sensor's zero taken out
+    [[nodiscard]] double zero() const { return zero_; }  // what it reads when shut; by the command
     [[nodiscard]] double time_command_s() const { return time_command_s_; }  // of the newest closing
     [[nodiscard]] double time_moved_s() const { return time_moved_s_; }
     [[nodiscard]] double time_shut_s() const { return time_shut_s_; }
 
   private:
+    [[nodiscard]] double less_zero(double time_s, double read);
     void track_fall(double time_s, double value);
     [[nodiscard]] double end_of_travel_s(double time_s);
 
@@ -36,6 +38,8 @@ class FlapMotion {
     bool have_command_ = false;
     bool command_fell_ = false;
     double commanded_ = 0.0;
+    double time_asked_s_ = 0.0;  // when the command last changed
+    double zero_ = 0.0;
     double position_ = 0.0;
     double open_level_ = 1.0;
     double last_open_time_s_ = 0.0;  // last instant at which the flap stood at its open level

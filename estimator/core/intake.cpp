@@ -15,6 +15,7 @@ constexpr double kLivelyShare = 0.8;         // changes from sample to sample on
 constexpr std::uint64_t kMovingAgain = 40;   // changing samples after which a stuck channel is believed again
 constexpr double kSpikeNoise =
     14.0;  // times the noise, from one sample to the next: further than any car moves
+constexpr double kFlapJump = 0.2, kFlapTravel_s = 0.016;  // no flap travels all its way in less
 constexpr double kSpikeMemory_s = 4.0;
 constexpr double kSpikesNoisy = 5.0;  // so many of late: the channel is called noisy
 constexpr double kGoneAfter_s = 0.3;
@@ -35,6 +36,7 @@ bool can_spike(Channel c) {
         case Channel::accel_z:
         case Channel::pitot_pressure:
         case Channel::yaw_rate:
+        case Channel::flap_position:
             return true;
         default:
             return is_ride_height(c);
@@ -88,7 +90,7 @@ bool Intake::admit(Channel c, std::int64_t time_ns, double value) {
         return false;
     }
     Learned& l = learned_[index(c)];
-    if (can_spike(c) && is_spike(l, h, value, static_cast<double>(time_ns - h.last_time_ns) * 1e-9)) {
+    if (can_spike(c) && is_spike(c, l, h, value, static_cast<double>(time_ns - h.last_time_ns) * 1e-9)) {
         ++h.gated;
         h.status.result = FusionResult::gated;
         return false;
@@ -100,7 +102,7 @@ bool Intake::admit(Channel c, std::int64_t time_ns, double value) {
 
 // A sample far from the one before is held back; if the next one lies on the same side, the channel has
 // really moved.
-bool Intake::is_spike(Learned& l, ChannelHealth& h, double value, double since_s) {
+bool Intake::is_spike(Channel c, Learned& l, ChannelHealth& h, double value, double since_s) {
     l.spikes *= std::exp(-std::min(since_s, 1.0) / kSpikeMemory_s);
     if (h.fault == Fault::noisy && l.spikes < 1.0) h.fault = Fault::none;
     if (h.samples < 100 || l.moving_share < kLivelyShare || l.noise_sd <= 0.0 ||
@@ -108,7 +110,9 @@ bool Intake::is_spike(Learned& l, ChannelHealth& h, double value, double since_s
         l.suspect = false;
         return false;
     }
-    const double limit = kSpikeNoise * l.noise_sd;
+    // A flap moves far and fast, its sensor has next to no noise.
+    const double limit =
+        c == Channel::flap_position ? std::max(kFlapJump, since_s / kFlapTravel_s) : kSpikeNoise * l.noise_sd;
     if (std::abs(value - h.last_value) <= limit) {
         l.suspect = false;
         return false;

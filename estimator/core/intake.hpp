@@ -40,7 +40,8 @@ class Intake {
         double suspect_value = 0.0;
         double spikes = 0.0;  // of late, forgotten over kSpikeMemory_s
     };
-    [[nodiscard]] bool is_spike(Learned& learned, ChannelHealth& health, double value, double since_s);
+    [[nodiscard]] bool is_spike(Channel c, Learned& learned, ChannelHealth& health, double value,
+                                double since_s);
     [[nodiscard]] bool admit(Channel c, std::int64_t time_ns, double value);
     void learn(Channel c, Learned& learned, ChannelHealth& health, std::int64_t time_ns, double value);
 

@@ -46,6 +46,7 @@ class PitotCalibration {
     // The air speed has been away from what wind and scale explain for about a second, by more than gusts
     // make.
     [[nodiscard]] bool broken() const { return std::abs(off_mps_) >= kOff_mps; }
+    [[nodiscard]] bool suspect() const { return std::abs(off_mps_) >= 0.5 * kOff_mps; }
 
     static constexpr double kFrom_mps = 25.0;
 

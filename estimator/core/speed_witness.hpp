@@ -18,13 +18,13 @@ class SpeedWitness {
         const double off = w.by_distance_mps - w.sensor_mps;
         const double jump = std::abs(off - off_mps_);
         const double limit = kOff_mps + kOffShare * w.sensor_mps;
-        if (jump > limit) abrupt_ = true;
+        if (jump > limit) quiet_s_ = 0.0;
         off_mps_ += std::min(w.span_s / kMean_s, 1.0) * (off - off_mps_);
         const double bias_mps = bias_ * w.sensor_mps;
         const bool apart = std::abs(off_mps_ - bias_mps) > limit;
         apart_s_ = apart ? apart_s_ + w.span_s : 0.0;
         agree_s_ = apart ? 0.0 : agree_s_ + w.span_s;
-        if (agree_s_ > kAgree_s) abrupt_ = false;
+        quiet_s_ = apart ? quiet_s_ : quiet_s_ + w.span_s;
         if (std::abs(off_mps_ - bias_mps) < 0.5 * limit && w.sensor_mps > 10.0)
             bias_ += w.span_s / kBiasMemory_s * (off / w.sensor_mps - bias_);
     }
@@ -34,12 +34,16 @@ class SpeedWitness {
     }
 
     // The sensor has drifted away from the distance.
-    [[nodiscard]] bool sensor_drifts() const { return apart_s_ > kApart_s && !abrupt_; }
+    [[nodiscard]] bool sensor_drifts() const { return apart_s_ > kApart_s && !parted_at_once(); }
     // The distance may stand in for the sensor: it agreed with it for some seconds before.
-    [[nodiscard]] bool distance_sound() const { return agree_s_ > kAgree_s || (apart_s_ > 0.0 && !abrupt_); }
+    [[nodiscard]] bool distance_sound() const {
+        return agree_s_ > kAgree_s || (apart_s_ > 0.0 && !parted_at_once());
+    }
     [[nodiscard]] double noise_sd_mps() const { return std::max(std::sqrt(variance_), 0.1); }
 
   private:
+    [[nodiscard]] bool parted_at_once() const { return quiet_s_ < kAgree_s; }
+
     static constexpr double kOff_mps = 0.6, kOffShare = 0.008;  // beyond slip, tyre wear and the racing line
     static constexpr double kMean_s = 1.0;
     static constexpr double kApart_s = 0.5;
@@ -49,7 +53,7 @@ class SpeedWitness {
     double off_mps_ = 0.0;  // distance less sensor, mean of late
     double bias_ = 0.0;     // the same in the long run, relative: calibration of either
     double apart_s_ = 0.0, agree_s_ = 0.0;
-    bool abrupt_ = false;
+    double quiet_s_ = 0.0;  // since the difference last jumped, time apart not counted
     double variance_ = 0.25;
 };
 

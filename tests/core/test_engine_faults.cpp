@@ -271,18 +271,35 @@ TEST_CASE("speed and acceleration lost: the closing is not judged, and silence a
     CHECK(unknown);
 }
 
-TEST_CASE("flap position lost: the closing cannot be followed, and the brakes after it say so, seed 7") {
+TEST_CASE("flap position lost: the command stands in, the closing is found and not judged, seed 7") {
     const Stage& stage = Stage::of(kPlainCar);
     const Follow follow = through(stage, stage.short_of, Channel::flap_position, Kind::drop);
-    CHECK_FALSE(follow.found(stage.short_of));
-    bool stale = false, unknown = false;
+    const auto found = follow.found(stage.short_of);
+    REQUIRE(found);
+    CHECK_FALSE(found->reattachment_known);
+    CHECK(found->verdict == core::Verdict::unclear);
+    bool distrusted = false, unknown = false;
     for (const core::Alarm& a : follow.alarms()) {
-        stale = stale || (a.kind == core::AlarmKind::data_stale && a.channel == Channel::flap_position);
-        const double off_s = static_cast<double>(a.time_ns) * 1e-9 - stage.short_of.time_brake_s;
-        unknown = unknown || (a.kind == core::AlarmKind::unknown_at_brakes && std::abs(off_s) < 0.1);
+        distrusted = distrusted ||
+                     (a.kind == core::AlarmKind::sensor_distrusted && a.channel == Channel::flap_position);
+        unknown = unknown || (a.kind == core::AlarmKind::unknown_at_brakes && a.closure == found->number);
     }
-    CHECK(stale);
+    CHECK(distrusted);
     CHECK(unknown);
+}
+
+TEST_CASE("flap position and command lost: the closing cannot be followed, and the loss is told, seed 7") {
+    const Stage& stage = Stage::of(kPlainCar);
+    Follow follow = stage.before(stage.short_of);
+    follow.drop(Channel::flap_position)
+        .drop(Channel::flap_command)
+        .until(stage.short_of.time_closed_s + kAfter_s);
+    check_no_nonsense(follow);
+    CHECK_FALSE(follow.found(stage.short_of));
+    bool stale = false;
+    for (const core::Alarm& a : follow.alarms())
+        stale = stale || (a.kind == core::AlarmKind::data_stale && a.channel == Channel::flap_position);
+    CHECK(stale);
 }
 
 TEST_CASE("one load or one ride height lost for good: the others carry the closings that follow, seed 7",
