@@ -228,8 +228,8 @@ void Engine::fuse_accel_z(double measured_mps2) {
     const bool off = forces_known && std::abs(accel_z_mean_mps2_) > kAccelZOff_mps2 + 3.0 * state_sd;
     accel_z_off_s_ = off ? accel_z_off_s_ + health.interval_s : 0.0;
     accel_z_refusal_.add(!use || off, health.interval_s);
-    const bool wrong =
-        accel_z_refusal_.wrong() || accel_z_held_s_ > kAccelZJumped_s || accel_z_off_s_ > kAccelZOffFor_s;
+    const bool wrong = (air_known && accel_z_refusal_.wrong()) || accel_z_held_s_ > kAccelZJumped_s ||
+                       accel_z_off_s_ > kAccelZOffFor_s;
     if (wrong && health.trust == Trust::good) {
         distrust(Channel::accel_z, Fault::jumped);
         // What it has led the areas to is forgotten.

@@ -121,7 +121,7 @@ TEST_CASE("speed, air speed and accelerations failing one at a time, seed 22", "
         {"open_wheel-full", "accel_z:drift=0.3", kDriftWithin_s},
         {"prototype-full", "pitot_pressure:step=-800"},
         {"open_wheel-full", "pitot_pressure:stuck"},
-        {"open_wheel-full", "pitot_pressure:drift=40", kDriftWithin_s},
+        {"open_wheel-full", "pitot_pressure:drift=60", kDriftWithin_s},
     };
     for (const Failure& f : failures) check(f, 22);
 }
