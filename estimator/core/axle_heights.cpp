@@ -7,7 +7,6 @@
 namespace holdfast::core {
 namespace {
 
-constexpr double kSmoothing_s = 0.010;
 constexpr double kSpreadForRoll_m2 = 0.01;  // sum of squared distances from the mean: 0.1 m apart at least
 constexpr double kNoiseLeast_m = 0.05e-3;   // resolution of a laser height sensor; common practice, no source
 constexpr double kNoiseUnknown_m = 0.3e-3;
@@ -58,18 +57,14 @@ std::optional<AxleHeights::Height> AxleHeights::take(const Frame& frame, std::ui
         out.dh_m = sum_h / n - mean_y * roll_rad;
         out.noise_gain = 1.0 / n;
     }
-    const double time_s = frame.time_s();
-    last_sample_s_ = time_s;
-    const double share = started_ ? 1.0 - std::exp(-(time_s - smooth_time_s_) / kSmoothing_s) : 1.0;
-    smooth_dh_m_ += share * (out.dh_m - smooth_dh_m_);
-    smooth_time_s_ = time_s;
-    started_ = true;
+    last_sample_s_ = frame.time_s();
+    dh_m_ = out.dh_m;
     return out;
 }
 
 void AxleHeights::stand_in(double dh_m, double time_s) {
-    smooth_dh_m_ = dh_m;
-    smooth_time_s_ = stood_in_s_ = time_s;
+    dh_m_ = dh_m;
+    stood_in_s_ = time_s;
 }
 
 double AxleHeights::noise_sd_m(const Intake& intake) const {

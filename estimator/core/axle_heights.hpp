@@ -26,13 +26,12 @@ class AxleHeights {
     [[nodiscard]] std::optional<Height> take(const Frame& frame, std::uint64_t admitted, double roll_rad);
 
     [[nodiscard]] bool can_tell_roll() const { return can_tell_roll_; }
-    [[nodiscard]] double roll_rad() const { return roll_rad_; }        // newest, where this axle can tell
-    [[nodiscard]] double smooth_dh_m() const { return smooth_dh_m_; }  // over about 10 ms, for the areas
-    [[nodiscard]] double x_m() const { return x_m_; }  // mean place, forward of the front axle line
+    [[nodiscard]] double roll_rad() const { return roll_rad_; }  // newest, where this axle can tell
+    [[nodiscard]] double dh_m() const { return dh_m_; }  // newest; not smoothed: the areas follow at once
+    [[nodiscard]] double x_m() const { return x_m_; }    // mean place, forward of the front axle line
     [[nodiscard]] double noise_sd_m(const Intake& intake) const;  // of a single sensor
     [[nodiscard]] std::size_t count() const { return count_; }
     [[nodiscard]] const RideHeightSensor& sensor(std::size_t i) const { return sensor_[i]; }
-    void restart() { started_ = false; }
     // Time since the last sensor's sample, s.
     [[nodiscard]] double age_s(double time_s) const { return time_s - last_sample_s_; }
     // A height from elsewhere while the sensors are lost.
@@ -44,10 +43,8 @@ class AxleHeights {
     std::size_t count_ = 0;
     double x_m_ = 0.0;
     bool can_tell_roll_ = false;
-    bool started_ = false;
     double roll_rad_ = 0.0;
-    double smooth_dh_m_ = 0.0;
-    double smooth_time_s_ = 0.0;
+    double dh_m_ = 0.0;
     double last_sample_s_ = 0.0;
     double stood_in_s_ = 0.0;
 };

@@ -19,21 +19,19 @@ double tau_chords(std::size_t tau_index) {
     return kTauLeast_chords * std::pow(kTauMost_chords / kTauLeast_chords, share);
 }
 
-void ReattachmentBank::begin(ChassisFilter::Filter& filter, double chord_time_s, const Regain& regain,
-                             double flap_height_factor) {
+void ReattachmentBank::begin(ChassisFilter::Filter& filter, double chord_time_s, const Regain& regain) {
     running_ = true;
     chord_time_s_ = chord_time_s;
     // What comes back is the flap as the opening showed it, and a difference that the closed state may have.
     // The difference moves the area and the flap's size together, so that the level with the flap open stays.
     StateVector both{};
-    both[kAreaRear] = flap_height_factor;
+    both[kAreaRear] = 1.0;
     both[kFlapAreaRear] = 1.0;
     open_flap_mean_ = filter.x[kFlapAreaRear];
     open_flap_variance_ = filter.diagonal(kFlapAreaRear);
     difference_variance_ = (regain.ratio_sd * open_flap_mean_) * (regain.ratio_sd * open_flap_mean_);
     const double difference = (regain.ratio - 1.0) * open_flap_mean_;
     for (std::size_t i = 0; i < kChassisCount; ++i) filter.x[i] += difference * both[i];
-    height_factor_ = flap_height_factor;
     filter.add_rank_one(both, difference_variance_);
     flap_prior_mean_ = filter.x[kFlapAreaRear];
     flap_prior_variance_ = filter.diagonal(kFlapAreaRear);
@@ -246,12 +244,12 @@ void ReattachmentBank::abandon(ChassisFilter::Filter& filter) {
 void ReattachmentBank::forget_difference(ChassisFilter::Filter& filter) {
     const double sum = open_flap_variance_ + difference_variance_;
     const double share = open_flap_variance_ / sum;
-    const double difference = filter.x[kFlapAreaRear] - open_flap_mean_;
-    filter.x[kFlapAreaRear] = open_flap_mean_ + share * (filter.x[kFlapAreaRear] - flap_prior_mean_);
+    const double came_back = filter.x[kFlapAreaRear];
+    filter.x[kFlapAreaRear] = open_flap_mean_ + share * (came_back - flap_prior_mean_);
+    const double difference = came_back - filter.x[kFlapAreaRear];
     filter.scale_state(kFlapAreaRear, std::max(share, 1e-3));
     filter.add_noise(kFlapAreaRear, share * difference_variance_);
-    const double moved = height_factor_ * difference;
-    filter.add_noise(kAreaRear, moved * moved);
+    filter.add_noise(kAreaRear, difference * difference);
 }
 
 }  // namespace holdfast::core

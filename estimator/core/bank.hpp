@@ -65,8 +65,7 @@ class ReattachmentBank {
   public:
     // Begin at the closing command. The filter's flap size is conditioned on from here on (its variance is
     // put aside) until collapse() gives it back.
-    void begin(ChassisFilter::Filter& filter, double chord_time_s, const Regain& regain,
-               double flap_height_factor);
+    void begin(ChassisFilter::Filter& filter, double chord_time_s, const Regain& regain);
     [[nodiscard]] bool running() const { return running_; }
 
     // Before the filter's predict: advance every candidate's missing share to time_s. Returns the base path's
@@ -132,7 +131,6 @@ class ReattachmentBank {
     double open_flap_mean_ = 0.0;  // m^2, before the difference of the closed state
     double open_flap_variance_ = 0.0;
     double difference_variance_ = 0.0;
-    double height_factor_ = 1.0;
     double flap_prior_mean_ = 0.0;
     double flap_prior_variance_ = 0.0;
     double base_missing_ = 1.0;

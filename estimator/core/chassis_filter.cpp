@@ -17,6 +17,7 @@ constexpr double kAreaPrior_m2 = 1.8;
 constexpr double kAreaPriorSd_m2 = 1.5;
 constexpr double kSlopePrior_m = -6.0;  // m^2/m: areas grow as the car comes down, some 0.4 % each millimetre
 constexpr double kSlopePriorSd_m = 5.0;
+constexpr double kCurvePriorSd = 100.0;       // m^2/m^2: an optimum of the ride height some 30 mm wide
 constexpr double kWindPriorSd_mps = 2.0;      // common practice, no source
 constexpr double kWindLeastSpeed_mps = 15.0;  // below, air forces do not matter and the ratio would run away
 constexpr double kGustSd = 0.015;             // relative to dynamic pressure: 0.6 m/s at 80 m/s
@@ -25,8 +26,6 @@ constexpr double kPitotGainSd = 0.004;  // what the calibration leaves
 constexpr double kPitotGainMemory_s = 1e4;
 constexpr double kFlapPrior_m2 = 0.70;
 constexpr double kFlapPriorSd_m2 = 0.30;
-// Between a wing that does not feel the ground and one whose part of it scales with the whole.
-constexpr double kFlapSlopePrior_pm = -2.5, kFlapSlopePriorSd_pm = 2.0;
 constexpr double kFlapFrontPriorSd_m2 = 0.12;
 // Less than such sensors have: with 0.1 a first closing is judged beside areas that still find their way.
 constexpr double kAccelZOffsetSd_mps2 = 0.03;
@@ -37,7 +36,7 @@ constexpr double kAreaDrift_m2 = 0.004;
 constexpr double kWindDrift_mps = 0.10;
 constexpr double kTurnForgets_rad =
     1.0;                               // an unseen turn by so much leaves 1/e of what was known of the wind
-constexpr double kSlopeDrift_m = 0.7;  // m^2/m: the slope is not the same at every height
+constexpr double kSlopeDrift_m = 0.4;  // m^2/m: what a parabola over the ride height leaves out
 constexpr double kLoadOffsetDrift_n = 0.5;
 constexpr double kFlapDrift_m2 = 0.0005;
 
@@ -79,24 +78,26 @@ ChassisFilter::ChassisFilter(const Car& car) : constants_(car) {
     variance[kAccelZOffset] = square(kAccelZOffsetSd_mps2);
     variance[kAreaFront] = variance[kAreaRear] = square(kAreaPriorSd_m2);
     variance[kSlopeFront] = variance[kSlopeRear] = square(kSlopePriorSd_m);
+    variance[kCurveFront] = variance[kCurveRear] = square(kCurvePriorSd);
     variance[kTransferFront] = square(std::hypot(constants_.transfer_sd, car.front.anti_brake_share.sd));
     variance[kTransferRear] = square(std::hypot(constants_.transfer_sd, car.rear.anti_brake_share.sd));
     variance[kLoadOffsetFront] = square(std::hypot(constants_.weight_sd_front_n, kLoadOffsetSensorSd_n));
     variance[kLoadOffsetRear] = square(std::hypot(constants_.weight_sd_rear_n, kLoadOffsetSensorSd_n));
     variance[kWindAlong] = variance[kWindAcross] = square(kWindPriorSd_mps);
     variance[kGust] = square(kGustSd);
-    variance[kFlapSlope] = square(kFlapSlopePriorSd_pm);
     variance[kFlapAreaFront] = square(kFlapFrontPriorSd_m2);
     variance[kFlapAreaRear] = square(kFlapPriorSd_m2);
     filter_.set_diagonal(variance);
     filter_.x[kAreaFront] = filter_.x[kAreaRear] = kAreaPrior_m2;
     filter_.x[kSlopeFront] = filter_.x[kSlopeRear] = kSlopePrior_m;
-    filter_.x[kFlapSlope] = kFlapSlopePrior_pm;
     filter_.x[kFlapAreaRear] = kFlapPrior_m2;
 }
 
-double ChassisFilter::flap_height_factor(double dh_rear_m) const {
-    return std::clamp(1.0 + filter_.x[kFlapSlope] * dh_rear_m, 0.6, 1.6);
+double ChassisFilter::front_area_m2(double dh_m) const {
+    return filter_.x[kAreaFront] + dh_m * (filter_.x[kSlopeFront] + 0.5 * dh_m * filter_.x[kCurveFront]);
+}
+double ChassisFilter::rear_area_m2(double dh_m) const {
+    return filter_.x[kAreaRear] + dh_m * (filter_.x[kSlopeRear] + 0.5 * dh_m * filter_.x[kCurveRear]);
 }
 
 void ChassisFilter::predict(const ChassisInput& in) {
@@ -121,7 +122,6 @@ void ChassisFilter::predict(const ChassisInput& in) {
     factor_per_across_ = per_across;
     wind_factor_ = std::clamp(wind_factor_, 0.5, 2.0);
     const double q = in.dynamic_pressure_pa * wind_factor_;
-    const double factor_rear = flap_height_factor(in.dh_rear_m);
 
     // Forces left over at each axle, [axle-balance]: what accelerates the sprung mass.
     const double transfer = constants_.transfer_per_accel_kg * in.accel_x_mps2;
@@ -142,19 +142,20 @@ void ChassisFilter::predict(const ChassisInput& in) {
     rear[kAreaRear] = -q;
     front[kSlopeFront] = -q * in.dh_front_m;
     rear[kSlopeRear] = -q * in.dh_rear_m;
+    front[kCurveFront] = 0.5 * in.dh_front_m * front[kSlopeFront];
+    rear[kCurveRear] = 0.5 * in.dh_rear_m * rear[kSlopeRear];
     front[kTransferFront] = transfer;
     rear[kTransferRear] = -transfer;
     front[kLoadOffsetFront] = -1.0;
     rear[kLoadOffsetRear] = -1.0;
     front[kFlapAreaFront] = q * in.missing;
-    rear[kFlapAreaRear] = q * factor_rear * in.missing;
-    rear[kFlapSlope] = q * x[kFlapAreaRear] * in.dh_rear_m * in.missing;
+    rear[kFlapAreaRear] = q * in.missing;
 
     // All air forces scale with the wind together.
     double air_front = 0.0;
     double air_rear = 0.0;
-    for (const ChassisState p :
-         {kAreaFront, kAreaRear, kSlopeFront, kSlopeRear, kFlapAreaFront, kFlapAreaRear}) {
+    for (const ChassisState p : {kAreaFront, kAreaRear, kSlopeFront, kSlopeRear, kCurveFront, kCurveRear,
+                                 kFlapAreaFront, kFlapAreaRear}) {
         air_front += front[p] * x[p];
         air_rear += rear[p] * x[p];
     }
@@ -173,16 +174,15 @@ void ChassisFilter::predict(const ChassisInput& in) {
     for (std::size_t p = kMovingCount; p < kChassisCount; ++p) {
         step_.heave_accel_by_state[p] = (front[p] + rear[p]) / mass;
         step_.pitch_accel_by_state[p] = (b * rear[p] - a * front[p]) / inertia;
-        if (p == kWindAlong || p == kWindAcross || p == kGust || p == kFlapSlope)
-            continue;  // in q and factor_rear
+        if (p == kWindAlong || p == kWindAcross || p == kGust) continue;  // in q
         heave_accel += step_.heave_accel_by_state[p] * x[p];
         pitch_accel += step_.pitch_accel_by_state[p] * x[p];
     }
     const double front_per_rear = x[kFlapAreaFront] / std::max(x[kFlapAreaRear], 0.1);
     step_.dt_s = dt;
     step_.heave_accel_mps2 = heave_accel;
-    step_.heave_accel_per_missing_area = q * (factor_rear + front_per_rear) / mass;
-    step_.pitch_accel_per_missing_area = q * (b * factor_rear - a * front_per_rear) / inertia;
+    step_.heave_accel_per_missing_area = q * (1.0 + front_per_rear) / mass;
+    step_.pitch_accel_per_missing_area = q * (b - a * front_per_rear) / inertia;
 
     const double half = 0.5 * dt * dt;
     x[kHeave] += dt * x[kHeaveRate] + half * heave_accel;

@@ -105,8 +105,9 @@ class ChassisFilter {
     [[nodiscard]] Filter& filter() { return filter_; }
     [[nodiscard]] const Filter& filter() const { return filter_; }
 
-    // Factor on the flap's rear area at this ride height, [flap-height].
-    [[nodiscard]] double flap_height_factor(double dh_rear_m) const;
+    // Areas at these ride heights (against static), flap closed and flow attached, [height], m^2.
+    [[nodiscard]] double front_area_m2(double dh_m) const;
+    [[nodiscard]] double rear_area_m2(double dh_m) const;
 
   private:
     ChassisConstants constants_;

@@ -22,6 +22,8 @@ enum ChassisState : std::size_t {
     kAreaRear,         // m^2
     kSlopeFront,       // m^2/m, change of the front area with the front ride height
     kSlopeRear,        // m^2/m
+    kCurveFront,       // m^2/m^2, change of the front slope with the front ride height
+    kCurveRear,        // m^2/m^2
     kTransferFront,    // -, error of the share of the longitudinal load transfer that the front springs feel
     kTransferRear,     // -
     kLoadOffsetFront,  // N, measured minus true load of the axle, error of the static weight included
@@ -30,7 +32,6 @@ enum ChassisState : std::size_t {
                  // the car
     kWindAcross,  // m/s, wind against the car when its course is east
     kGust,  // -, relative excess of dynamic pressure beside that; the pitot's gain error where there is one
-    kFlapSlope,      // 1/m, relative change of the flap's rear area with the rear ride height
     kFlapAreaFront,  // m^2, front area that goes with the flap's flow
     kFlapAreaRear,   // m^2, rear area that goes with the flap's flow; last, so that it can be conditioned on
     kChassisCount,

@@ -15,6 +15,9 @@ constexpr double kWindow_s =
 constexpr double kGiveUp_s = 2.0;        // a flap that takes longer to shut is not judged
 constexpr double kBrakesWithin_s = 3.0;  // of the flap being shut
 constexpr double kWeighEvery_s = 0.020;
+// Of the rear area with the flow back: at speeds and heights, and soon under brakes, where the car has not
+// been since the flap opened. Found on simulated cars whose areas are no parabolas.
+constexpr double kLevelUnsure_m2 = 0.04;
 constexpr double kPartProbability = 0.5;  // that a part stays, for the record to say so
 constexpr std::size_t kUsualKnownAfter = 3;
 constexpr double kFlapPicture_s = 0.004;  // spacing of the flap's points in the picture
@@ -45,7 +48,8 @@ void ClosureTracker::begin(const AeroNow& now, double time_command_s, double cho
     posterior_.count = 0;
     flap_count_ = 0;
     missing_ = {filter.x[kFlapAreaRear], 0.0, 1.0, 0.0};
-    bank_.begin(filter, chord_m / std::max(now.speed_mps, 5.0), usual_.regain(), now.factor_rear);
+    filter.add_noise(kAreaRear, square(kLevelUnsure_m2));
+    bank_.begin(filter, chord_m / std::max(now.speed_mps, 5.0), usual_.regain());
 }
 
 void ClosureTracker::shut(double time_moved_s, double time_shut_s) {
@@ -119,19 +123,23 @@ void ClosureTracker::judge_shortfall() {
     const double limit = settings_.short_share_limit * rear_attached;
     const double limit_sd = settings_.short_share_limit * q * at.rear_area_sd_m2;
     double mean = 0.0, second = 0.0, short_probability = 0.0, rear_mean = 0.0;
+    // Of one point, where the whole flow comes back or a part stays detached; the front loses its share too.
+    const auto add = [&](double weight, double rear_n, double sd) {
+        short_probability += weight * normal_cdf((rear_n - limit) / std::max(std::hypot(sd, limit_sd), 1.0));
+        rear_mean += weight * rear_n;
+        const double all = 1.0 + at.front_per_rear;
+        mean += weight * all * rear_n;
+        second += weight * square(all) * (square(rear_n) + square(sd));
+    };
     for (std::size_t i = 0; i < posterior_.count; ++i) {
         const PosteriorPoint& p = posterior_.points[i];
         if (p.weight < kUnheard) continue;
         const double missing = p.share_missing(closure_.time_brake_s);
-        const double rear_n = q * at.factor_rear * (p.flap_m2 * missing + p.stay_m2 * (1.0 - missing));
-        const double sd = q * at.factor_rear * missing * std::sqrt(p.flap_variance);
-        short_probability +=
-            p.weight * normal_cdf((rear_n - limit) / std::max(std::sqrt(square(sd) + square(limit_sd)), 1.0));
-        rear_mean += p.weight * rear_n;
-        const double all =
-            rear_n * (1.0 + at.front_per_rear / at.factor_rear);  // front's share of the flap's flow
-        mean += p.weight * all;
-        second += p.weight * (all * all + sd * sd);
+        const double rear_n = q * p.flap_m2 * missing;
+        const double variance = p.flap_variance * square(missing);
+        add(p.weight * (1.0 - p.stays), rear_n, q * std::sqrt(variance));
+        add(p.weight * p.stays, rear_n + q * p.stay_m2 * (1.0 - missing),
+            q * std::sqrt(variance + p.stay_variance * square(1.0 - missing)));
     }
     closure_.shortfall_n = {mean, std::sqrt(std::max(second - mean * mean, 0.0))};
     closure_.shortfall_share = rear_mean / rear_attached;
@@ -174,7 +182,7 @@ void ClosureTracker::describe_reattachment() {
         flap += p.weight * p.flap_m2;
         flap2 += p.weight * p.flap_m2 * p.flap_m2;
         flap_within += p.weight * p.flap_variance;
-        stay += p.weight * p.stay_m2;
+        stay += p.weight * p.stays * p.stay_m2;
         log_chords += p.weight * std::log(chords);
         log_chords2 += p.weight * square(std::log(chords));
         slow += p.weight *
@@ -210,7 +218,7 @@ void ClosureTracker::finish_bank(const AeroNow& now, double colour, ChassisFilte
     move_stay_into_area(filter);
     if (!shut_ || !usable_) return;
     describe_reattachment();
-    closure_.flap_downforce_n = now.dynamic_pressure_pa * now.factor_rear * filter.x[kFlapAreaRear];
+    closure_.flap_downforce_n = now.dynamic_pressure_pa * filter.x[kFlapAreaRear];
     if (closure_.slow) {
         slow_alarm_out_ = Alarm{AlarmKind::slow_reattachment,
                                 static_cast<std::int64_t>(closure_.time_closed_s * 1e9),
@@ -315,7 +323,7 @@ bool ClosureTracker::regrowth(Regrowth& out) {
             const PosteriorPoint& p = posterior_.points[k];
             if (p.weight < kNegligibleWeight) continue;
             const double missing = p.share_missing(time_s);
-            const double stays = p.stay_m2 / std::max(p.flap_m2, 0.05);
+            const double stays = p.stays * p.stay_m2 / std::max(p.flap_m2, 0.05);
             sorted_.value[sorted_.count] = 1.0 - missing - stays * (1.0 - missing);
             sorted_.weight[sorted_.count++] = p.weight;
         }

@@ -21,7 +21,6 @@ struct AeroNow {
     double time_s = 0.0;
     double speed_mps = 0.0;
     double dynamic_pressure_pa = 0.0;
-    double factor_rear = 1.0;            // of the flap's rear area with ride height
     double front_per_rear = 0.0;         // the flap's front area over its rear area
     double rear_area_attached_m2 = 0.0;  // with the flow wholly back
     double rear_area_sd_m2 = 0.0;

@@ -239,10 +239,8 @@ void Engine::reconsider_brake_pressure(const Frame& frame) {
 void Engine::restart_motion(double time_s) {
     const double colour = std::max(front_road_.colour(), rear_road_.colour());
     tracker_.end(aero_now(time_s), colour, chassis_.filter(), true);
-    chassis_.restart_motion(front_heights_.smooth_dh_m(), rear_heights_.smooth_dh_m(), front_heights_.x_m(),
+    chassis_.restart_motion(front_heights_.dh_m(), rear_heights_.dh_m(), front_heights_.x_m(),
                             rear_heights_.x_m());
-    front_heights_.restart();
-    rear_heights_.restart();
     front_road_.restart();
     rear_road_.restart();
     loads_known_ = false;
@@ -266,14 +264,12 @@ bool Engine::converged() const {
 
 AeroNow Engine::aero_now(double time_s) const {
     const auto& x = chassis_.filter().x;
-    const double dh_rear = rear_heights_.smooth_dh_m();
     AeroNow now;
     now.time_s = time_s;
     now.speed_mps = longitudinal_.speed_mps();
     now.dynamic_pressure_pa = dynamic_pressure_pa();
-    now.factor_rear = chassis_.flap_height_factor(dh_rear);
     now.front_per_rear = x[kFlapAreaFront] / std::max(x[kFlapAreaRear], 0.1);
-    now.rear_area_attached_m2 = x[kAreaRear] + x[kSlopeRear] * dh_rear;
+    now.rear_area_attached_m2 = chassis_.rear_area_m2(rear_heights_.dh_m());
     now.rear_area_sd_m2 = std::sqrt(chassis_.filter().variance(kAreaRear));
     now.lap = static_cast<std::int32_t>(std::lround(lap_));
     now.reliable = loads_known_ && heights_known_ && stale_ == 0 && converged() && !flap_stood_in_ &&

@@ -43,7 +43,7 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
     }
     const double time_s = frame.time_s();
     const auto around = [&](const AxleHeights& heights) {
-        return AxleLoads::Surroundings{accel_y_mps2_, longitudinal_.speed_mps(), heights.smooth_dh_m(),
+        return AxleLoads::Surroundings{accel_y_mps2_, longitudinal_.speed_mps(), heights.dh_m(),
                                        heights.age_s(time_s) < settings_.stale_s};
     };
     const AxleLoads::Load front =
@@ -81,8 +81,8 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
     in.speed_mps = longitudinal_.speed_mps();
     in.course_rad = course_rad_;
     in.air_speed_measured = have_pitot_;
-    in.dh_front_m = front_heights_.smooth_dh_m();
-    in.dh_rear_m = rear_heights_.smooth_dh_m();
+    in.dh_front_m = front_heights_.dh_m();
+    in.dh_rear_m = rear_heights_.dh_m();
     in.accel_x_mps2 = longitudinal_.true_accel_mps2(accel_x_mps2_);
     in.transfer_force_n = transfer_force_n();
     in.fuel_burnt_kg = car_.mass_kg.value - mass_kg();

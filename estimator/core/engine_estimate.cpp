@@ -45,9 +45,8 @@ const Estimate& Engine::estimate() {
     const bool closing = tracker_.bank().running();
     const double q = std::max(measured_pressure_pa(), 1e-3);
     const double wind_factor = chassis_.wind_factor();
-    const double dh_front = front_heights_.smooth_dh_m();
-    const double dh_rear = rear_heights_.smooth_dh_m();
-    const double factor_rear = chassis_.flap_height_factor(dh_rear);
+    const double dh_front = front_heights_.dh_m();
+    const double dh_rear = rear_heights_.dh_m();
 
     Estimate& e = estimate_;
     e.time_ns = time_ns_;
@@ -69,21 +68,22 @@ const Estimate& Engine::estimate() {
     ChassisFilter::Filter::Vector front{}, rear{};
     front[kAreaFront] = 1.0;
     front[kSlopeFront] = dh_front;
+    front[kCurveFront] = 0.5 * square(dh_front);
     rear[kAreaRear] = 1.0;
     rear[kSlopeRear] = dh_rear;
-    double area_front = x[kAreaFront] + x[kSlopeFront] * dh_front;
-    double area_rear = x[kAreaRear] + x[kSlopeRear] * dh_rear;
+    rear[kCurveRear] = 0.5 * square(dh_rear);
+    double area_front = chassis_.front_area_m2(dh_front);
+    double area_rear = chassis_.rear_area_m2(dh_rear);
     if (closing) {
-        area_front += tracker_.mean_deviation(kAreaFront, filter) +
-                      tracker_.mean_deviation(kSlopeFront, filter) * dh_front;
-        area_rear += tracker_.mean_deviation(kAreaRear, filter) +
-                     tracker_.mean_deviation(kSlopeRear, filter) * dh_rear;
+        for (const ChassisState p : {kAreaFront, kSlopeFront, kCurveFront})
+            area_front += tracker_.mean_deviation(p, filter) * front[p];
+        for (const ChassisState p : {kAreaRear, kSlopeRear, kCurveRear})
+            area_rear += tracker_.mean_deviation(p, filter) * rear[p];
         area_front -= front_ratio * missing.area_m2;
-        area_rear -= factor_rear * missing.area_m2;
+        area_rear -= missing.area_m2;
     } else {
         front[kFlapAreaFront] = -missing_open_;
-        rear[kFlapAreaRear] = -factor_rear * missing_open_;
-        rear[kFlapSlope] = -x[kFlapAreaRear] * missing_open_ * dh_rear;
+        rear[kFlapAreaRear] = -missing_open_;
         area_front += front[kFlapAreaFront] * x[kFlapAreaFront];
         area_rear += rear[kFlapAreaRear] * x[kFlapAreaRear];
     }
@@ -99,18 +99,17 @@ const Estimate& Engine::estimate() {
         return std::sqrt(filter.variance_of(form) + square(whole * area) + square(missing_sd));
     };
     e.cla_front_m2 = {area_front, sd_of(front, area_front, front_ratio * missing.area_sd_m2)};
-    e.cla_rear_m2 = {area_rear, sd_of(rear, area_rear, factor_rear * missing.area_sd_m2)};
+    e.cla_rear_m2 = {area_rear, sd_of(rear, area_rear, missing.area_sd_m2)};
     const double left_m2 = kAxleForceLeft * mass_kg() * kGravity / q;
     const double floor_variance = square(left_m2);
     e.cla_front_m2.sd = std::hypot(e.cla_front_m2.sd, left_m2);
     e.cla_rear_m2.sd = std::hypot(e.cla_rear_m2.sd, left_m2);
     e.front_other_variance =
         floor_variance + square(whole * area_front) + square(front_ratio * missing.area_sd_m2);
-    e.rear_other_variance =
-        floor_variance + square(whole * area_rear) + square(factor_rear * missing.area_sd_m2);
+    e.rear_other_variance = floor_variance + square(whole * area_rear) + square(missing.area_sd_m2);
     if (closing) {
         front[kFlapAreaFront] = -missing.share;
-        rear[kFlapAreaRear] = -factor_rear * missing.share;
+        rear[kFlapAreaRear] = -missing.share;
     }
     for (std::size_t i = 0; i < kSlowCount; ++i) {
         e.front_by_slow[i] = wind_factor * front[kMovingCount + i];
@@ -123,7 +122,7 @@ const Estimate& Engine::estimate() {
     by_wind(kWindAlong, chassis_.wind_factor_per_along());
     by_wind(kWindAcross, chassis_.wind_factor_per_across());
     by_wind(kGust, 1.0);
-    e.cda_m2 = longitudinal_.drag_area(dh_front, dh_rear, factor_rear * missing.share, missing.share_sd, q,
+    e.cda_m2 = longitudinal_.drag_area(dh_front, dh_rear, missing.share, missing.share_sd, q,
                                        mass_kg() * kGravity + q * (area_front + area_rear));
     e.cda_m2.value *= pressure_for_drag_pa() / q;
     e.cda_m2.sd = std::hypot(e.cda_m2.sd, std::hypot(wind, kDragWhole) * e.cda_m2.value);

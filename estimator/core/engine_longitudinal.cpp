@@ -103,9 +103,9 @@ LongitudinalFilter::DragInput Engine::drag_input() const {
     LongitudinalFilter::DragInput in;
     in.speed_mps = longitudinal_.speed_mps();
     in.dynamic_pressure_pa = pressure_for_drag_pa();
-    in.dh_front_m = front_heights_.smooth_dh_m();
-    in.dh_rear_m = rear_heights_.smooth_dh_m();
-    in.missing = missing_open_ * chassis_.flap_height_factor(in.dh_rear_m);
+    in.dh_front_m = front_heights_.dh_m();
+    in.dh_rear_m = rear_heights_.dh_m();
+    in.missing = missing_open_;
     in.mass_kg = mass_kg();
     const double sprung_kg = chassis_.constants().sprung_mass_kg - (car_.mass_kg.value - in.mass_kg);
     if (loads_known_) in.downforce_n = load_front_n_ + load_rear_n_ - sprung_kg * kGravity;

@@ -92,11 +92,9 @@ void Engine::watch_pitot(double elapsed_s) {
     const double measured_n = load_front_n_ + load_rear_n_ - c.weight_front_n - c.weight_rear_n -
                               x[kLoadOffsetFront] - x[kLoadOffsetRear] +
                               kGravity * (car_.mass_kg.value - mass_kg());
-    const double area =
-        x[kAreaFront] + x[kAreaRear] + x[kSlopeFront] * front_heights_.smooth_dh_m() +
-        x[kSlopeRear] * rear_heights_.smooth_dh_m() -
-        missing_open_ *
-            (x[kFlapAreaFront] + x[kFlapAreaRear] * chassis_.flap_height_factor(rear_heights_.smooth_dh_m()));
+    const double area = chassis_.front_area_m2(front_heights_.dh_m()) +
+                        chassis_.rear_area_m2(rear_heights_.dh_m()) -
+                        missing_open_ * (x[kFlapAreaFront] + x[kFlapAreaRear]);
     if (measured_n < 1000.0) return;
     const double off = pitot_newest_pa_ / pitot_calibration_.scale() * area / measured_n - 1.0;
     pitot_off_ += std::min(elapsed_s / kSettle_s, 1.0) * (off - pitot_off_);

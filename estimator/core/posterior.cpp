@@ -20,7 +20,7 @@ constexpr double kInverseSqrt2Pi = 0.39894228040143268;
 struct Evidence {
     double log = kImpossible;
     double flap = 0.0, flap_variance = 0.0;  // deviation of the flap's size from its prior mean
-    double stay = 0.0;
+    double stay = 0.0, stay_variance = 0.0;
 };
 
 // The whole flow comes back: one unknown, the flap's size. MODEL.md [bank-evidence].
@@ -36,6 +36,7 @@ Evidence evidence_whole(const CandidateSums& s, double flap_variance) {
 struct Truncated {
     double probability = 0.0;  // of the untruncated normal between the bounds
     double mean = 0.0;
+    double variance = 0.0;
 };
 
 Truncated truncate(double mean, double sd, double least, double most) {
@@ -43,10 +44,14 @@ Truncated truncate(double mean, double sd, double least, double most) {
     const double b = (most - mean) / sd;
     constexpr double kTiny = 1e-30;
     const double p = 0.5 * (std::erfc(a * kSqrtHalf) - std::erfc(b * kSqrtHalf));
-    const double density = (std::exp(-0.5 * a * a) - std::exp(-0.5 * b * b)) * kInverseSqrt2Pi;
     Truncated t;
     t.probability = std::max(p, kTiny);
-    t.mean = p > kTiny ? std::clamp(mean + sd * density / p, least, most) : std::clamp(mean, least, most);
+    t.mean = std::clamp(mean, least, most);
+    if (p <= kTiny) return t;
+    const double at_least = kInverseSqrt2Pi * std::exp(-0.5 * a * a) / p;
+    const double at_most = kInverseSqrt2Pi * std::exp(-0.5 * b * b) / p;
+    t.mean = std::clamp(mean + sd * (at_least - at_most), least, most);
+    t.variance = square(sd) * std::max(1.0 + a * at_least - b * at_most - square(at_least - at_most), 0.0);
     return t;
 }
 
@@ -80,6 +85,7 @@ Evidence evidence_part(const CandidateSums& s, double flap_variance, const StayP
     const Truncated after = truncate(e.stay, std::sqrt(p11 / determinant), stay.least, stay.most);
     e.log += std::log(after.probability) - stay.log_probability;
     e.stay = after.mean;
+    e.stay_variance = after.variance;
     return e;
 }
 
@@ -128,6 +134,8 @@ void weigh_candidates(const ReattachmentBank& bank, const Usual& usual, double t
                 out.flap_variance[c] = mix(whole.flap_variance, part.flap_variance, part_share) +
                                        part_share * (1.0 - part_share) * square(whole.flap - part.flap);
                 out.stay_mean[c] = part_share * part.stay;
+                out.some_stay_mean[c] = part.stay;
+                out.some_stay_variance[c] = part.stay_variance;
                 best = std::max(best, out.log_weight[c]);
             }
         }
@@ -183,7 +191,10 @@ void refine(const ReattachmentBank& bank, const CandidateWeights& weights, Poste
                 point.flap_m2 = mix(weights.flap_mean[first + t], weights.flap_mean[first + next], share);
                 point.flap_variance =
                     mix(weights.flap_variance[first + t], weights.flap_variance[first + next], share);
-                point.stay_m2 = mix(weights.stay_mean[first + t], weights.stay_mean[first + next], share);
+                point.stay_m2 =
+                    mix(weights.some_stay_mean[first + t], weights.some_stay_mean[first + next], share);
+                point.stay_variance = mix(weights.some_stay_variance[first + t],
+                                          weights.some_stay_variance[first + next], share);
                 point.stays = mix(weights.stays[first + t], weights.stays[first + next], share);
             }
         }

@@ -17,8 +17,10 @@ struct CandidateWeights {
     CandidateArray weight{};
     CandidateArray flap_mean{};  // m^2
     CandidateArray flap_variance{};
-    CandidateArray stay_mean{};  // m^2, mixture of "none stays" and "some stays"
-    CandidateArray stays{};      // probability that a part stays detached, given the candidate
+    CandidateArray stay_mean{};           // m^2, mixture of "none stays" and "some stays"
+    CandidateArray some_stay_mean{};      // m^2, if some stays
+    CandidateArray some_stay_variance{};  // m^4
+    CandidateArray stays{};               // probability that a part stays detached, given the candidate
 };
 
 // temper >= 1 divides the innovations' information: how much less they tell than white ones would.
@@ -32,8 +34,9 @@ struct PosteriorPoint {
     Shape shape = Shape::first_order;
     double flap_m2 = 0.0;
     double flap_variance = 0.0;
-    double stay_m2 = 0.0;
-    double stays = 0.0;
+    double stay_m2 = 0.0;  // if some stays
+    double stay_variance = 0.0;
+    double stays = 0.0;  // probability that some stays
 
     [[nodiscard]] double share_missing(
         double time_s) const;  // of the flap's flow, without the part that stays

@@ -26,7 +26,7 @@ enum EstimateFlag : std::uint32_t {
 };
 
 // States of the car in the vertical filter that are smoothed after the outing (slow_snapshot.hpp names them).
-inline constexpr std::size_t kSlowCount = 15;
+inline constexpr std::size_t kSlowCount = 16;
 
 struct Estimate {
     std::int64_t time_ns = 0;

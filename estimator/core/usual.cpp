@@ -15,8 +15,8 @@ constexpr double kUsualShare = 0.7;      // expected share of usual closings
 constexpr double kSlowReach = 1.8;       // slow ones lie up to e^1.8 = 6 times above, evenly in ln
 constexpr double kRegainScatter = 0.03;  // from closing to closing
 constexpr double kRegainDrift = 0.01;
-constexpr double kPriorTau_chords = 14.0;
-constexpr double kPriorTauSpread = 0.9;  // in ln: from 5 to 40 chords within one standard deviation
+constexpr double kPriorTau_chords = 20.0;
+constexpr double kPriorTauSpread = 1.2;  // in ln: from 6 to 66 chords within one standard deviation
 
 }  // namespace
 

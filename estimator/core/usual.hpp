@@ -47,7 +47,7 @@ class Usual {
     double regain_ = 1.0;
     double regain_variance_ = 0.01;  // 10 %
     std::array<double, kStartCount> start_weight_{1, 1, 1, 1, 1, 1, 1, 1, 1, 1};
-    std::array<double, kShapeCount> shape_weight_{2.0, 1.0, 1.0};
+    std::array<double, kShapeCount> shape_weight_{1.0, 1.0, 1.0};
 };
 
 }  // namespace holdfast::core

@@ -31,16 +31,15 @@ class BankRun {
     static constexpr double kDt_s = 0.0025;
     static constexpr double kChordTime_s = 0.003;
 
-    BankRun(std::uint64_t seed, const core::Regain& regain, double flap_front_m2, double height_factor = 1.05)
+    BankRun(std::uint64_t seed, const core::Regain& regain, double flap_front_m2)
         : random_(seed),
           chassis_(chassis_at_a_point(seed)),
           bank_(std::make_unique<core::ReattachmentBank>()) {
         auto& filter = chassis_.filter();
-        for (const auto state :
-             {core::kWindAlong, core::kWindAcross, core::kGust, core::kFlapSlope, core::kFlapAreaFront})
+        for (const auto state : {core::kWindAlong, core::kWindAcross, core::kGust, core::kFlapAreaFront})
             filter.reset_state(state, 0.0);
         filter.x[core::kFlapAreaFront] = flap_front_m2;
-        bank_->begin(filter, kChordTime_s, regain, height_factor);
+        bank_->begin(filter, kChordTime_s, regain);
     }
 
     // Conditions the filter on the flap's size; before the first step.

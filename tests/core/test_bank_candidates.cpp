@@ -82,7 +82,7 @@ TEST_CASE("candidates start where the flap passes their position, and so many ch
 }
 
 TEST_CASE("an abandoned bank gives the filter its flap back as it was known before") {
-    BankRun run(6, {1.0, 0.0}, 0.0, 0.0);  // no regain: nothing else is changed
+    BankRun run(6, {1.0, 0.0}, 0.0);  // no regain: nothing else is changed
     const double mean = run.filter().x[kFlapAreaRear];
     const double variance = run.bank().flap_prior_variance();
     REQUIRE(run.filter().diagonal(kFlapAreaRear) == 0.0);

@@ -73,9 +73,9 @@ void collapse(BankRun& run, const Mixture& m) {
     run.bank().collapse(run.filter(), m.weight, m.flap_mean, m.flap_variance, m.stay_mean);
 }
 
-// No regain and no height factor: what comes back is then the mixture and nothing else.
+// No regain: what comes back is then the mixture and nothing else.
 BankRun run_of(std::uint64_t seed) {
-    BankRun run(seed, {1.0, 0.0}, 0.0, 0.0);
+    BankRun run(seed, {1.0, 0.0}, 0.0);
     run.run(120);
     return run;
 }

@@ -12,7 +12,7 @@ namespace {
 using namespace holdfast::core;
 using namespace holdfast::testing;
 
-constexpr int kPoints = 81;
+constexpr int kPoints = 241;
 constexpr double kReach = 8.0;  // prior standard deviations to each side
 
 double size_at(const ReattachmentBank& bank, int point) {

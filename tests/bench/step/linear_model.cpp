@@ -46,13 +46,12 @@ ChassisInput make_input(const ChassisConstants& car, const State& truth, double 
     in.road_front_m2ps = in.road_rear_m2ps = kRoad_m2ps;
     // Loads that keep the car on its slow path: what the axle carries at rest and the air's share.
     const double q = in.dynamic_pressure_pa;
-    const double flap_height = 1.0 + truth[kFlapSlope] * in.dh_rear_m;
     in.load_front_n =
         car.weight_front_n + truth[kLoadOffsetFront] + noise_front_n +
         q * (truth[kAreaFront] + truth[kSlopeFront] * in.dh_front_m - in.missing * truth[kFlapAreaFront]);
-    in.load_rear_n = car.weight_rear_n + truth[kLoadOffsetRear] + noise_rear_n +
-                     q * (truth[kAreaRear] + truth[kSlopeRear] * in.dh_rear_m -
-                          in.missing * flap_height * truth[kFlapAreaRear]);
+    in.load_rear_n =
+        car.weight_rear_n + truth[kLoadOffsetRear] + noise_rear_n +
+        q * (truth[kAreaRear] + truth[kSlopeRear] * in.dh_rear_m - in.missing * truth[kFlapAreaRear]);
     return in;
 }
 
