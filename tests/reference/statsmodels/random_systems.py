@@ -51,7 +51,7 @@ def prior(states):
     return draw(states), numpy.round(root @ root.T / states + 0.01 * numpy.eye(states), 4)
 
 
-def slow(states=16, times=6, count=2, noise=0.3):
+def slow(states=14, times=6, count=2, noise=0.3):
     mean, covariance = prior(states)
     kept = numpy.round(1.0 - 0.2 * abs(draw(times, states)), 4)
     added = numpy.round(0.05 * draw(times, states) ** 2, 4)
