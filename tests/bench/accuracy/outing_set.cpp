@@ -17,7 +17,8 @@ std::vector<std::string> usual_scenarios() {
             "open_wheel-rough",  "open_wheel-noisy",  "prototype-windy",
             "open_wheel-full",   "prototype-full",    "heavy_closed-full",
             "open_wheel-tight",  "open_wheel-smooth", "prototype-noisy-rough",
-            "open_wheel-peaked", "open_wheel-sick"};
+            "open_wheel-peaked", "open_wheel-sick",   "prototype-sick",
+            "heavy_closed-sick"};
 }
 
 std::vector<std::string> fault_scenarios() {
