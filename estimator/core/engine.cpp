@@ -63,8 +63,8 @@ double Engine::tyre_force_x_n() const {
 // What the links carry their shares of. A share of the load transfer: of the force that accelerates the car,
 // and of that which holds the air's too, as far as the air does not act at the height of the ground: half of
 // it is taken.
-double Engine::transfer_force_n() const {
-    return mass_kg() * accel_x_mps2_ + kDragInTransfer * drag_n();
+double Engine::transfer_force_n(double accel_mps2) const {
+    return mass_kg() * accel_mps2 + kDragInTransfer * drag_n();
 }
 
 StepResult Engine::step(const Frame& frame) {

@@ -112,7 +112,7 @@ class Engine {
     [[nodiscard]] double pressure_for_drag_pa() const;  // before the longitudinal filter's own wind
     [[nodiscard]] double drag_n() const;
     [[nodiscard]] double tyre_force_x_n() const;
-    [[nodiscard]] double transfer_force_n() const;
+    [[nodiscard]] double transfer_force_n(double accel_mps2) const;
     [[nodiscard]] double mass_kg() const;
     [[nodiscard]] AeroNow aero_now(double time_s) const;
     [[nodiscard]] std::uint64_t sources() const;
@@ -187,6 +187,7 @@ class Engine {
     double lap_ = 0.0, lap_first_ = 0.0, lap_distance_m_;
     bool have_lap_ = false;
     double load_front_n_ = 0.0, load_rear_n_ = 0.0;
+    double accel_before_mps2_ = 0.0;  // along x, at the vertical step before
     bool loads_known_ = false;
     double missing_open_ = 0.0;  // base path while no closing is judged
     double next_drift_s_ = 0.0;

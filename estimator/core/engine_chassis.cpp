@@ -20,7 +20,7 @@ constexpr double kGateClosing = 12.0;  // while a bank runs: candidates far from
 constexpr double kOpeningLag_chords =
     5.0;  // flow leaves the opening flap so fast; common practice, no source
 constexpr double kTransferMemory_s = 0.1;
-constexpr double kTransferUnsure = 0.03;
+constexpr double kTransferUnsure = 0.04;
 constexpr double kAccelUnsure_mps2 = 0.3, kAccelUnsureBraking_mps2 = 8.0;
 constexpr double kWindMemory_s = 120.0;  // over which the strength of the wind against the car is averaged
 constexpr double kAccelZLess = 2.0;      // noise of accel_z over its white part
@@ -60,6 +60,9 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
     in.load_rear_n = first ? rear.sum_n : 0.5 * (load_rear_n_ + rear.sum_n);
     load_front_n_ = front.sum_n;
     load_rear_n_ = rear.sum_n;
+    // As the loads: over the step. At the brakes' onset half a step is 60 N of transfer.
+    const double accel_mps2 = first ? accel_x_mps2_ : 0.5 * (accel_before_mps2_ + accel_x_mps2_);
+    accel_before_mps2_ = accel_x_mps2_;
     const double accel_density =
         square(chassis_.constants().transfer_per_accel_kg * intake_.noise_sd(Channel::accel_x)) *
         intake_.health()[index(Channel::accel_x)].interval_s;
@@ -67,7 +70,7 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
     in.load_noise_rear_n2s = rear.noise_density_n2s + accel_density;
     // Links, tyres and pitch do not carry the longitudinal transfer quite as modelled: an error that keeps
     // its sign for a while, in proportion to the transfer.
-    const double transfer_n = chassis_.constants().transfer_per_accel_kg * accel_x_mps2_;
+    const double transfer_n = chassis_.constants().transfer_per_accel_kg * accel_mps2;
     double transfer_density = 2.0 * kTransferMemory_s * square(kTransferUnsure * transfer_n);
     if (!have_accel_x_) {
         // The speed's derivative tells of an acceleration some hundredths of a second late.
@@ -83,8 +86,8 @@ void Engine::step_chassis(const Frame& frame, std::uint64_t admitted, double dt_
     in.air_speed_measured = have_pitot_;
     in.dh_front_m = front_heights_.dh_m();
     in.dh_rear_m = rear_heights_.dh_m();
-    in.accel_x_mps2 = longitudinal_.true_accel_mps2(accel_x_mps2_);
-    in.transfer_force_n = transfer_force_n();
+    in.accel_x_mps2 = longitudinal_.true_accel_mps2(accel_mps2);
+    in.transfer_force_n = transfer_force_n(accel_mps2);
     in.fuel_burnt_kg = car_.mass_kg.value - mass_kg();
     in.road_front_m2ps = front_road_.density_m2ps(longitudinal_.speed_mps());
     in.road_rear_m2ps = rear_road_.density_m2ps(longitudinal_.speed_mps());
