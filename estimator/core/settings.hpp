@@ -9,7 +9,7 @@ struct Settings {
     double alarm_probability = 0.90;    // probability_short at brake onset that raises the alarm
     double verdict_probability = 0.80;  // probability that a verdict full or short needs; else unclear
     double slow_factor = 1.6;           // in chords, against the car's usual
-    double slow_probability = 0.60;     // probability_slow that flags a closing
+    double slow_probability = 0.65;     // probability_slow that flags a closing
     double stale_s = 0.25;              // a needed channel silent for longer is stale (source time)
 };
 
