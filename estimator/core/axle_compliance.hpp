@@ -14,6 +14,7 @@
 #include <cstdint>
 
 #include "estimator/core/car.hpp"
+#include "estimator/core/mean.hpp"
 #include "estimator/core/results.hpp"
 #include "estimator/core/ud_filter.hpp"
 #include "proto/vocabulary/frame.hpp"
@@ -57,14 +58,6 @@ class ChassisCompliance {
     [[nodiscard]] const AxleCompliance& axle(bool rear) const { return rear ? rear_ : front_; }
 
   private:
-    struct Mean {
-        double sum = 0.0, count = 0.0;
-        void add(double v) {
-            sum += v;
-            count += 1.0;
-        }
-        [[nodiscard]] double value() const { return sum / count; }
-    };
     void end_block(const HealthTable& health);
     [[nodiscard]] bool sound(Channel c, const HealthTable& health) const;
     [[nodiscard]] const Mean& mean(Channel c) const { return mean_[index(c)]; }

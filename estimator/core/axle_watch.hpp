@@ -12,6 +12,7 @@
 
 #include "estimator/core/car.hpp"
 #include "estimator/core/intake.hpp"
+#include "estimator/core/mean.hpp"
 #include "estimator/core/relation.hpp"
 #include "proto/vocabulary/frame.hpp"
 
@@ -47,15 +48,6 @@ class AxleWatch {
     [[nodiscard]] bool sides_broken() const { return sides_.fast_broken() || sides_.slow_broken(); }
 
   private:
-    struct Mean {
-        double sum = 0.0, count = 0.0;
-        void add(double v) {
-            sum += v;
-            count += 1.0;
-        }
-        [[nodiscard]] bool any() const { return count > 0.0; }
-        [[nodiscard]] double value() const { return sum / count; }
-    };
     template <class Visit>
     void for_all_channels(Visit&& visit) const {
         visit(left_);

@@ -38,7 +38,6 @@ void ReattachmentBank::begin(ChassisFilter::Filter& filter, double chord_time_s,
     filter.diagonal(kFlapAreaRear) = 0.0;
     base_missing_ = 1.0;
     base_decay_ = 1.0;
-    passed_time_s_.fill(kNever);
     start_time_s_.fill(kNever);
     decay_dt_s_ = -1.0;
     missing_.setOnes();
@@ -55,12 +54,7 @@ void ReattachmentBank::begin(ChassisFilter::Filter& filter, double chord_time_s,
 }
 
 double ReattachmentBank::advance(double time_s, double dt_s, double flap_position) {
-    for (std::size_t s = 0; s < kStartCount; ++s) {
-        if (std::isnan(passed_time_s_[s]) && flap_position <= kStartRules[s].position) {
-            passed_time_s_[s] = time_s;
-            start_time_s_[s] = time_s + kStartRules[s].chords * chord_time_s_;
-        }
-    }
+    flap_at(flap_position, time_s);
     share_of_all(time_s, dt_s);
     const double base_start = start_time_s_[kBaseStart];
     if (time_s > base_start) {
@@ -71,10 +65,13 @@ double ReattachmentBank::advance(double time_s, double dt_s, double flap_positio
 }
 
 void ReattachmentBank::flap_shut(double time_s) {
+    flap_at(0.0, time_s);
+}
+
+void ReattachmentBank::flap_at(double position, double time_s) {
     for (std::size_t s = 0; s < kStartCount; ++s) {
-        if (!std::isnan(passed_time_s_[s])) continue;
-        passed_time_s_[s] = time_s;
-        start_time_s_[s] = time_s + kStartRules[s].chords * chord_time_s_;
+        if (std::isnan(start_time_s_[s]) && position <= kStartRules[s].position)
+            start_time_s_[s] = time_s + kStartRules[s].chords * chord_time_s_;
     }
 }
 

@@ -124,6 +124,8 @@ class ReattachmentBank {
     using StateVector = ChassisFilter::Filter::Vector;
 
     void forget_difference(ChassisFilter::Filter& filter);
+    // Sets the start of every rule whose position the flap has now passed for the first time.
+    void flap_at(double position, double time_s);
     void share_of_all(double time_s, double dt_s);
 
     bool running_ = false;
@@ -135,7 +137,6 @@ class ReattachmentBank {
     double flap_prior_variance_ = 0.0;
     double base_missing_ = 1.0;
     double base_decay_ = 1.0;
-    std::array<double, kStartCount> passed_time_s_{};
     std::array<double, kStartCount> start_time_s_{};
     double decay_dt_s_ = -1.0;
     Row missing_, decay_, tail_decay_, decay_step_, tail_step_;

@@ -19,15 +19,10 @@ std::string written(double value) {
 }
 
 Result<std::vector<std::string>> lines_of(const std::string& path) {
-    Result<RawFile> file = RawFile::open(path);
-    if (!file) return file.errors();
-    std::string text;
-    do {
-        text.append(file->unread().begin(), file->unread().end());
-    } while (file->refill());
-    if (file->failure()) return Error{.file = path, .message = *file->failure()};
+    const Result<std::string> text = read_text(path);
+    if (!text) return text.errors();
     std::vector<std::string> lines(1);
-    for (const char c : text) {
+    for (const char c : *text) {
         if (c == '\n') {
             lines.emplace_back();
         } else {

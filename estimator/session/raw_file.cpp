@@ -47,4 +47,15 @@ double RawFile::progress() const {
     return std::min(1.0, static_cast<double>(consumed_) / static_cast<double>(size_));
 }
 
+Result<std::string> read_text(const std::string& path) {
+    Result<RawFile> file = RawFile::open(path);
+    if (!file) return file.errors();
+    std::string text;
+    do {
+        text.append(file->unread().begin(), file->unread().end());
+    } while (file->refill());
+    if (file->failure()) return Error{.file = path, .message = *file->failure()};
+    return text;
+}
+
 }  // namespace holdfast::session

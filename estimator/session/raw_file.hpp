@@ -49,4 +49,7 @@ class RawFile {
     std::optional<std::string> failure_;
 };
 
+// A small file at once: its text.
+[[nodiscard]] Result<std::string> read_text(const std::string& path);
+
 }  // namespace holdfast::session

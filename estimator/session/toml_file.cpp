@@ -101,13 +101,9 @@ std::string describe(const TomlEntry& entry) {
 }
 
 Result<std::vector<TomlEntry>> read_toml_file(const std::string& path) {
-    Result<RawFile> file = RawFile::open(path);
-    if (!file) return file.errors();
-    std::string text;
-    do {
-        text.append(file->unread().begin(), file->unread().end());
-    } while (file->refill());
-    if (file->failure()) return Error{.file = path, .message = *file->failure()};
+    const Result<std::string> read = read_text(path);
+    if (!read) return read.errors();
+    const std::string& text = *read;
 
     if (const auto stray = find_stray_character(text)) {
         const auto line_breaks =
